@@ -1,0 +1,194 @@
+"""Rolling of one pitch curve on another, for circles and lines: the motion of a carried body and the law of gearing.
+
+The fixed pitch curve touches the carried one at the pitch point. In the fixed frame the line of centres is the x axis
+when the roll is zero. A point p of the carried body is given from the carried centre (circles) or from the pitch point
+(lines); `place` says where it stands in the fixed frame after a roll, `meet` at which roll a carried curve touches its
+envelope: then its normal passes through the pitch point.
+"""
+
+from abc import ABC, abstractmethod
+from dataclasses import dataclass
+
+import numpy as np
+
+from gearsolid.curves.curve import Points, Reals
+from gearsolid.errors import DesignError
+
+
+class Rolling(ABC):
+    """The motion of a carried body whose pitch curve rolls without slip on a fixed one."""
+
+    @abstractmethod
+    def place(self, p: Points, roll: Reals) -> Points:
+        """Carried points p [mm] in the fixed frame [mm] after `roll` ([rad] for circles, [mm] for lines)."""
+
+    @abstractmethod
+    def velocity(self, p: Points, roll: Reals) -> Points:
+        """Derivative of `place` by the roll."""
+
+    @abstractmethod
+    def acceleration(self, p: Points, roll: Reals) -> Points:
+        """Second derivative of `place` by the roll."""
+
+    @abstractmethod
+    def turn(self, roll: Reals) -> Points:
+        """Unit complex number that turns carried directions into the fixed frame."""
+
+    @abstractmethod
+    def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
+        """Roll at which a carried curve through p with unit `tangent` touches its envelope; nan where it never does.
+
+        Args:
+            p: carried points [mm], any shape.
+            tangent: unit tangents of the carried curve there, same shape.
+            branch: +1 or -1, which of the two solutions of a circular pitch curve; a line has one.
+        """
+
+    @abstractmethod
+    def meet_rate(self, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
+        """Derivative of `meet` by the arc length of the carried curve, given its signed curvature [1/mm]."""
+
+
+def _moment(p: Points, tangent: Points) -> Reals:
+    """Distance h [mm] of the normal at p from the carried origin: the normal is {x : Re(x conj t) = h}."""
+    return np.real(p * np.conj(tangent))
+
+
+def _moment_rate(p: Points, tangent: Points, curvature: Reals) -> Reals:
+    return 1 + curvature * np.imag(p * np.conj(tangent))
+
+
+def _circle_meet(radius: float, p: Points, tangent: Points, branch: int) -> Reals:
+    with np.errstate(invalid="ignore"):
+        lean = np.arccos(-_moment(p, tangent) / radius)
+    roll = branch * lean - np.angle(tangent)
+    return np.angle(np.exp(1j * roll))
+
+
+def _circle_meet_rate(radius: float, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
+    h = _moment(p, tangent)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        slope = np.sign(radius) / np.sqrt(radius**2 - h**2)
+        return branch * slope * _moment_rate(p, tangent, curvature) - curvature
+
+
+@dataclass(frozen=True)
+class CircleOnCircle(Rolling):
+    """A circle carried round a fixed circle centred at the origin; the roll is the carried circle's own turn [rad].
+
+    Args:
+        fixed: radius of the fixed pitch circle [mm].
+        carried: signed radius of the carried pitch circle [mm]: positive outside the fixed circle, negative where one
+            circle lies inside the other (a smaller one inside, or a larger ring around).
+    """
+
+    fixed: float
+    carried: float
+
+    def __post_init__(self) -> None:
+        if not self.fixed > 0 or self.carried == 0 or self.fixed + self.carried == 0:
+            raise DesignError(
+                f"rolling circles have radii {self.fixed:g} and {self.carried:g} mm; the fixed one must be above 0 and "
+                "the two must not be centred on each other"
+            )
+
+    @property
+    def centre_distance(self) -> float:
+        """Signed place of the carried centre on the x axis at roll zero [mm]."""
+        return self.fixed + self.carried
+
+    @property
+    def orbit(self) -> float:
+        """Turn of the line of centres for one radian of roll [-]."""
+        return self.carried / self.fixed
+
+    def place(self, p: Points, roll: Reals) -> Points:
+        return self.centre_distance * np.exp(1j * self.orbit * roll) + p * self.turn(roll)
+
+    def velocity(self, p: Points, roll: Reals) -> Points:
+        k = self.orbit
+        return 1j * k * self.centre_distance * np.exp(1j * k * roll) + 1j * (1 + k) * p * self.turn(roll)
+
+    def acceleration(self, p: Points, roll: Reals) -> Points:
+        k = self.orbit
+        return -(k**2) * self.centre_distance * np.exp(1j * k * roll) - (1 + k) ** 2 * p * self.turn(roll)
+
+    def turn(self, roll: Reals) -> Points:
+        return np.exp(1j * (1 + self.orbit) * np.asarray(roll))
+
+    def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
+        return _circle_meet(self.carried, p, tangent, branch)
+
+    def meet_rate(self, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
+        return _circle_meet_rate(self.carried, p, tangent, curvature, branch)
+
+
+@dataclass(frozen=True)
+class CircleOnLine(Rolling):
+    """A circle carried along the fixed line x = 0; the roll is its own turn [rad].
+
+    Args:
+        carried: signed radius [mm]: positive on the side x > 0.
+    """
+
+    carried: float
+
+    def __post_init__(self) -> None:
+        if self.carried == 0:
+            raise DesignError("the radius of a circle rolling on a line is 0; give a signed radius in mm")
+
+    def place(self, p: Points, roll: Reals) -> Points:
+        return self.carried * (1 + 1j * np.asarray(roll)) + p * self.turn(roll)
+
+    def velocity(self, p: Points, roll: Reals) -> Points:
+        return 1j * self.carried + 1j * p * self.turn(roll)
+
+    def acceleration(self, p: Points, roll: Reals) -> Points:
+        return -p * self.turn(roll)
+
+    def turn(self, roll: Reals) -> Points:
+        return np.exp(1j * np.asarray(roll))
+
+    def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
+        return _circle_meet(self.carried, p, tangent, branch)
+
+    def meet_rate(self, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
+        return _circle_meet_rate(self.carried, p, tangent, curvature, branch)
+
+
+@dataclass(frozen=True)
+class LineOnCircle(Rolling):
+    """A line (a rack's pitch line) carried round a fixed circle; the roll is the length rolled [mm].
+
+    Carried points are given from the pitch point at roll zero, x outward from the circle and y along the line.
+
+    Args:
+        fixed: radius of the fixed pitch circle [mm].
+    """
+
+    fixed: float
+
+    def __post_init__(self) -> None:
+        if not self.fixed > 0:
+            raise DesignError(f"radius of the fixed pitch circle is {self.fixed:g} mm; it must be above 0")
+
+    def place(self, p: Points, roll: Reals) -> Points:
+        return (self.fixed + p + 1j * np.asarray(roll)) * self.turn(roll)
+
+    def velocity(self, p: Points, roll: Reals) -> Points:
+        return -1j * (p + 1j * np.asarray(roll)) / self.fixed * self.turn(roll)
+
+    def acceleration(self, p: Points, roll: Reals) -> Points:
+        return (1 - (p + 1j * np.asarray(roll)) / self.fixed) / self.fixed * self.turn(roll)
+
+    def turn(self, roll: Reals) -> Points:
+        return np.exp(-1j * np.asarray(roll) / self.fixed)
+
+    def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
+        with np.errstate(divide="ignore", invalid="ignore"):
+            return -_moment(p, tangent) / np.imag(tangent)
+
+    def meet_rate(self, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
+        h, across = _moment(p, tangent), np.imag(tangent)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            return -_moment_rate(p, tangent, curvature) / across + h * curvature * np.real(tangent) / across**2

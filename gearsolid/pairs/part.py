@@ -1,0 +1,74 @@
+"""A part of a machine: the flat section it is made of, its width, and how it moves."""
+
+from dataclasses import dataclass
+
+from gearsolid.curves.outline import Outline
+from gearsolid.errors import DesignError
+from gearsolid.pairs.motion import Motion
+from gearsolid.shop.bore import Bore
+
+
+@dataclass(frozen=True)
+class Boss:
+    """Loops raised on the top face of a body: a hub, or pins.
+
+    Args:
+        outline: pattern of loops, each wholly on the face.
+        height: [mm] above the face.
+    """
+
+    outline: Outline
+    height: float
+
+    def __post_init__(self) -> None:
+        if not self.height > 0:
+            raise DesignError(f"a boss is {self.height:g} mm high; it must be above 0")
+
+
+@dataclass(frozen=True)
+class Body:
+    """A solid of constant section: outer boundary, holes, an optional bore, optional bosses on its top face.
+
+    Args:
+        outer: outer boundary, material on its left.
+        width: [mm] along the axis.
+        holes: further boundaries inside (toothed hole of an annulus, roller holes), material on their left.
+        bore: shaft hole with optional keyway and chamfer, or None.
+        bosses: raised loops on the top face.
+        z: height of the bottom face [mm].
+    """
+
+    outer: Outline
+    width: float
+    holes: tuple[Outline, ...] = ()
+    bore: Bore | None = None
+    bosses: tuple[Boss, ...] = ()
+    z: float = 0.0
+
+    def __post_init__(self) -> None:
+        if not self.width > 0:
+            raise DesignError(f"the face width is {self.width:g} mm; it must be above 0")
+
+    @property
+    def volume(self) -> float:
+        """Exact volume [mm3]: areas by Green's theorem times widths, less the bore."""
+        area = self.outer.area + sum(h.area for h in self.holes)
+        bored = self.bore.volume(self.width) if self.bore else 0.0
+        return area * self.width - bored + sum(b.outline.area * b.height for b in self.bosses)
+
+
+@dataclass(frozen=True)
+class Part:
+    """A named body in its place in a machine.
+
+    Args:
+        name: ASCII, unique in the machine ("planet 2").
+        body: what is made.
+        motion: how it moves.
+        colour: red, green, blue from 0 to 1.
+    """
+
+    name: str
+    body: Body
+    motion: Motion
+    colour: tuple[float, float, float]
