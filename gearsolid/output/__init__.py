@@ -1,0 +1,1 @@
+"""Files: STEP, STL and the report, each read back before it is trusted."""

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from gearsolid.curves.curve import Curve, Points
+from gearsolid.curves.curve import Curve, Points, Reals
 from gearsolid.curves.outline import Outline, smooth_spans
 from gearsolid.curves.primitives import Arc
 
@@ -22,9 +22,7 @@ class _Cubics:
     control: Points
 
     def data(self, factor: complex) -> str:
-        return "".join(
-            f"C{_xy(b)} {_xy(c)} {_xy(d)}" for b, c, d in (self.control[:, 1:] * factor).tolist()
-        )
+        return "".join(f"C{_xy(b)} {_xy(c)} {_xy(d)}" for b, c, d in (self.control[:, 1:] * factor).tolist())
 
 
 @dataclass(frozen=True)
@@ -83,7 +81,7 @@ def _cubics(curve: Curve, first: float, last: float, tol: float) -> _Cubics:
     return _Cubics(control)
 
 
-def _miss(curve: Curve, t: Points, control: Points) -> float:
+def _miss(curve: Curve, t: Reals, control: Points) -> float:
     """Largest distance between curve and cubics at quarter points, measured at equal parameters (never too small)."""
     u = np.array([0.25, 0.5, 0.75])
     weights = np.stack([(1 - u) ** 3, 3 * u * (1 - u) ** 2, 3 * u**2 * (1 - u), u**3], axis=1)
