@@ -116,8 +116,7 @@ def _fit_span(curve: Curve, tol: float) -> Spline:
     t0, t1 = curve.span
     if not np.all(np.isfinite(curve.point(curve.sample(_CHECK_PER_POLE)))):
         raise DesignError(
-            f"a {type(curve.base if isinstance(curve, Section) else curve).__name__} has no finite point on part of its "
-            f"span {t0:g} to {t1:g}; trim it to the part that exists before fitting"
+            f"the curve has no finite point on part of its span {t0:g} to {t1:g}; trim it to the part that exists"
         )
     warp = _parameter(curve)
     directions = curve.tangent(np.array([t0, t1]))
@@ -133,8 +132,8 @@ def _fit_span(curve: Curve, tol: float) -> Spline:
                 return replace(trial, error=error)
             best = min(best, error)
     raise ToleranceError(
-        f"the best B-spline with up to {_POLE_BUDGET} poles is {best:.3g} mm from the curve, not the {tol:.3g} mm asked; "
-        "ask for a larger tolerance, or cut the curve into shorter spans"
+        f"the best B-spline with up to {_POLE_BUDGET} poles is {best:.3g} mm from the curve, not the {tol:.3g} mm "
+        "asked; ask for a larger tolerance, or cut the curve into shorter spans"
     )
 
 
