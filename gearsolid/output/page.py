@@ -12,9 +12,8 @@ from gearsolid.output.made import Made
 from gearsolid.output.plot import line_plot
 from gearsolid.output.report import FileRecord, PartRecord, Report, tightest_first
 from gearsolid.output.views import close_view, machine_view, part_view, shapes, windows
+from gearsolid.output.wording import VERDICTS, finding, number
 from gearsolid.pairs.machine import Machine
-
-_WORDS = {Verdict.ROLLS: "It rolls", Verdict.TOUCHES: "It rolls, touching", Verdict.BINDS: "It binds"}
 
 
 def page(report: Report, machine: Machine, result: RollResult, made: Sequence[Made]) -> str:
@@ -36,8 +35,8 @@ def page(report: Report, machine: Machine, result: RollResult, made: Sequence[Ma
         title=escape(report.title),
         version=escape(report.version),
         verdict=report.verdict.value,
-        verdict_word=_WORDS[report.verdict],
-        sentence=_tightest(worst),
+        verdict_word=VERDICTS[report.verdict],
+        sentence=escape(finding(worst)),
         figures=_figures(report, machine),
         shapes=shapes(made),
         machine_view=machine_view(machine, made, worst),
@@ -58,20 +57,6 @@ def page(report: Report, machine: Machine, result: RollResult, made: Sequence[Ma
 
 def _resource(name: str) -> str:
     return files("gearsolid.output").joinpath(name).read_text(encoding="utf-8")
-
-
-def _amount(contact: Contact) -> str:
-    if contact.verdict is Verdict.BINDS:
-        return f"overlap by {-contact.clearance:.4f} mm"
-    return f"come within {max(contact.clearance, 0.0):.4f} mm"
-
-
-def _tightest(contact: Contact) -> str:
-    return (
-        f"{escape(contact.name_a)} and {escape(contact.name_b)} {_amount(contact)} at input angle "
-        f"{contact.input_angle:.3f}°, at x {contact.place.real:.3f}, y {contact.place.imag:.3f} mm "
-        f"({contact.roles[0]} on {contact.roles[1]})."
-    )
 
 
 def _ring_sentence(contact: Contact) -> str:
@@ -95,17 +80,13 @@ def _figures(report: Report, machine: Machine) -> str:
     return "\n".join(f"<div><dt>{a}</dt><dd>{b} <span>{c}</span></dd></div>" for a, b, c in rows)
 
 
-def _optional(value: float | None, digits: int) -> str:
-    return "" if value is None else f"{value:.{digits}f}"
-
-
 def _contact_row(c: Contact) -> str:
     return (
         f"<tr><td>{escape(c.name_a)} with {escape(c.name_b)}</td>"
         f'<td class="v-{c.verdict.value}">{c.verdict.value}</td>'
-        f'<td class="n">{c.clearance:.4f}</td><td class="n">{_optional(c.play, 4)}</td>'
-        f'<td class="n">{_optional(c.play_angle, 4)}</td><td class="n">{_optional(c.contact_ratio, 3)}</td>'
-        f'<td class="n">{_optional(c.transmission_error, 5)}</td>'
+        f'<td class="n">{c.clearance:.4f}</td><td class="n">{number(c.play, 4)}</td>'
+        f'<td class="n">{number(c.play_angle, 4)}</td><td class="n">{number(c.contact_ratio, 3)}</td>'
+        f'<td class="n">{number(c.transmission_error, 5)}</td>'
         f"<td>{c.input_angle:.3f}°, {c.roles[0]} on {c.roles[1]}</td></tr>"
     )
 

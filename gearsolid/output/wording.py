@@ -1,0 +1,23 @@
+"""The sentences in which every output says what the roll test found."""
+
+from gearsolid.contact.result import Contact, Verdict
+
+VERDICTS = {Verdict.ROLLS: "It rolls", Verdict.TOUCHES: "It rolls, touching", Verdict.BINDS: "It binds"}
+
+
+def finding(contact: Contact) -> str:
+    """What was found at a contact's tightest place, one sentence."""
+    if contact.verdict is Verdict.BINDS:
+        amount = f"overlap by {-contact.clearance:.4f} mm"
+    else:
+        amount = f"come within {max(contact.clearance, 0.0):.4f} mm"
+    return (
+        f"{contact.name_a} and {contact.name_b} {amount} at input angle {contact.input_angle:.3f}°, "
+        f"at x {contact.place.real:.3f}, y {contact.place.imag:.3f} mm ({contact.roles[0]} on {contact.roles[1]})."
+    )
+
+
+def number(value: float | None, digits: int) -> str:
+    """A figure with so many decimals, or nothing where it has no meaning."""
+    # Adding zero turns a rounded -0.0 into 0.0.
+    return "" if value is None else f"{round(value, digits) + 0.0:.{digits}f}"
