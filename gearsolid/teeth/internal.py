@@ -21,6 +21,9 @@ from gearsolid.teeth.ring_margins import RingMargins, ring_margins
 # A flat shorter than this share of the module is left out of the outline.
 _NO_LAND = 1e-9
 
+# Roundings of a cutter's tip [modules] tried in turn when none is named; the first is common practice.
+_ROUNDINGS = (0.2, 0.1, 0.05)
+
 
 @dataclass(frozen=True)
 class PinionCutter:
@@ -256,25 +259,27 @@ def _enough_shift(ring: InternalGear, teeth: int) -> float:
 def _largest_cutter(ring: InternalGear) -> PinionCutter:
     """The cutter with most teeth that forms the whole flank and can be fed radially out of the ring.
 
-    Small rings allow no such cutter; they get the one with most teeth that works along the axis.
+    Small rings allow no such cutter; they get the one with most teeth that works along the axis. Steep flanks leave no
+    room for the usual rounding at the cutter's tip; they get a smaller one.
 
     Raises:
         DesignError: no cutter forms the flank.
     """
-    axial: PinionCutter | None = None
-    for teeth in range(ring.teeth - 2, 2, -1):
-        cutter = PinionCutter(teeth, _enough_shift(ring, teeth))
-        try:
-            generation = _Generation(ring, cutter)
-            generation.check(ring)
-        except DesignError:
-            continue
-        if generation.margins.trimming >= 0:
-            return cutter
-        axial = axial or cutter
-    if axial is None:
-        raise DesignError(
-            f"no pinion-shaped cutter forms a ring with {ring.teeth} teeth, tip radius {ring.tip_radius:.5g} mm, over "
-            f"base radius {ring.base_radius:.5g} mm: shorten the tip, lower the profile shift or take more teeth"
-        )
-    return axial
+    for rounding in _ROUNDINGS:
+        axial: PinionCutter | None = None
+        for teeth in range(ring.teeth - 2, 2, -1):
+            cutter = PinionCutter(teeth, _enough_shift(ring, teeth), rounding)
+            try:
+                generation = _Generation(ring, cutter)
+                generation.check(ring)
+            except DesignError:
+                continue
+            if generation.margins.trimming >= 0:
+                return cutter
+            axial = axial or cutter
+        if axial:
+            return axial
+    raise DesignError(
+        f"no pinion-shaped cutter forms a ring with {ring.teeth} teeth, tip radius {ring.tip_radius:.5g} mm, over "
+        f"base radius {ring.base_radius:.5g} mm: shorten the tip, lower profile shift, dedendum or pressure angle, or take more teeth"
+    )
