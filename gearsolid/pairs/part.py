@@ -10,7 +10,9 @@ from gearsolid.shop.bore import Bore
 
 @dataclass(frozen=True)
 class Boss:
-    """Loops raised on the top face of a body: a hub, or pins.
+    """Loops raised on the top face of a body: pins, or a hub.
+
+    A single loop round the axis is a hub: a bore of the body runs on through it.
 
     Args:
         outline: pattern of loops, each wholly on the face.
@@ -48,12 +50,38 @@ class Body:
     def __post_init__(self) -> None:
         if not self.width > 0:
             raise DesignError(f"the face width is {self.width:g} mm; it must be above 0")
+        hubs = [b for b in self.bosses if b.outline.is_chain]
+        if len(hubs) > 1:
+            raise DesignError(f"a body has {len(hubs)} hubs on its top face; it can have one")
+        opening = next((h for h in self.holes if h.is_chain), None)
+        if opening and (self.bore or hubs):
+            raise DesignError("a body with an opening round the axis (an annulus) has no place for a bore or a hub")
+        solid = min(o.r_min for o in (self.outer, *(h.outline for h in hubs)))
+        if self.bore:
+            edge = self.bore.radius + self.bore.chamfer
+            if not edge < solid:
+                raise DesignError(
+                    f"the bore of {self.bore.diameter:g} mm with its chamfer needs a radius of {edge:g} mm and the "
+                    f"body has {solid:.5g} mm; take a smaller bore or a larger body"
+                )
+            # The bore itself knows whether its two chamfers find room in this length.
+            self.bore.volume(self.bore_length)
+
+    @property
+    def hub(self) -> Boss | None:
+        """The boss round the axis, or None."""
+        return next((b for b in self.bosses if b.outline.is_chain), None)
+
+    @property
+    def bore_length(self) -> float:
+        """Length of the shaft hole [mm]: through the body and its hub."""
+        return self.width + (self.hub.height if self.hub else 0.0)
 
     @property
     def volume(self) -> float:
         """Exact volume [mm3]: areas by Green's theorem times widths, less the bore."""
         area = self.outer.area + sum(h.area for h in self.holes)
-        bored = self.bore.volume(self.width) if self.bore else 0.0
+        bored = self.bore.volume(self.bore_length) if self.bore else 0.0
         return area * self.width - bored + sum(b.outline.area * b.height for b in self.bosses)
 
 

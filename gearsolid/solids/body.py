@@ -1,0 +1,55 @@
+"""A body as a solid: walls on its boundaries and plane faces between them, without a Boolean on teeth."""
+
+import cadquery as cq
+from OCP.TopoDS import TopoDS_Solid
+
+from gearsolid.curves.fitted import fitted
+from gearsolid.curves.outline import Outline
+from gearsolid.pairs.part import Body
+from gearsolid.solids.check import VOLUME_TOL, check_solid
+from gearsolid.solids.walls import Wall, bore_wall, join_faces, plane_face, prism_walls
+
+# Share of the volume's tolerance that the fit of the flanks may use up.
+_AREA_SHARE = 0.3
+
+
+def body_solid(body: Body, tol: float = 1e-4) -> cq.Solid:
+    """The solid of a body, checked.
+
+    Args:
+        body: outlines, widths, bore and bosses.
+        tol: allowed distance of a fitted flank from the exact one [mm]; tightened where the volume asks for it.
+
+    Returns:
+        One valid solid whose volume is the body's within 1e-6 of it.
+
+    Raises:
+        SolidError: the kernel's solid is faulty or has another volume.
+        ToleranceError: a flank cannot be fitted.
+    """
+    return check_solid(cq.Solid(build_solid(body, tol)), body.volume)
+
+
+def build_solid(body: Body, tol: float = 1e-4) -> TopoDS_Solid:
+    """The kernel's solid of a body, not checked; `tol` [mm] as for `body_solid`."""
+    outlines = [body.outer, *body.holes, *(b.outline for b in body.bosses)]
+    section = sum(o.area for o in outlines[: 1 + len(body.holes)])
+    area_tol = _AREA_SHARE * VOLUME_TOL * abs(section) / len(outlines)
+
+    def walls(outline: Outline, z: float, height: float) -> list[Wall]:
+        return prism_walls(fitted(outline, tol, area_tol), z, height)
+
+    top = body.z + body.width
+    sides = walls(body.outer, body.z, body.width)
+    sides += [w for h in body.holes for w in walls(h, body.z, body.width)]
+    raised = [(b, w) for b in body.bosses for w in walls(b.outline, top, b.height)]
+    bore = [bore_wall(body.bore, body.z, body.bore_length)] if body.bore else []
+    below_hub = [] if body.hub else bore
+
+    faces = [f for w in (*sides, *(w for _, w in raised), *bore) for f in w.faces]
+    faces.append(plane_face(body.z, [w.lower for w in (*sides, *bore)], up=False))
+    faces.append(plane_face(top, [*(w.upper for w in (*sides, *below_hub)), *(w.lower.Reversed() for _, w in raised)]))
+    for boss, wall in raised:
+        through = bore if boss is body.hub else []
+        faces.append(plane_face(top + boss.height, [w.upper for w in (wall, *through)]))
+    return join_faces(faces)
