@@ -132,8 +132,8 @@ def fillet(flank: Curve, circle_radius: float, radius: float, samples: int = 257
         reached = np.abs(centres.point(t))
         raise DesignError(
             f"a fillet of {radius:.4g} mm does not fit between the flank and the circle of {circle_radius:.4g} mm "
-            f"radius: its centre would lie {np.nanmin(reached):.4g} to {np.nanmax(reached):.4g} mm from the axis, not at "
-            f"{target:.4g} mm; take another radius, or let the flank reach nearer to the circle"
+            f"radius: its centre would lie {np.nanmin(reached):.4g} to {np.nanmax(reached):.4g} mm from the axis, not "
+            f"at {target:.4g} mm; take another radius, or let the flank reach nearer to the circle"
         )
     touch = min(found, key=lambda u: abs(abs(complex(flank.point(np.asarray(u)))) - circle_radius))
     centre = complex(centres.point(np.asarray(touch)))
@@ -154,7 +154,7 @@ def _reaching(centres: Parallel, target: float, t: Reals) -> list[float]:
     sign = np.sign(np.abs(centres.point(t)) - target)
     found = [float(brentq(miss, t[k], t[k + 1], xtol=1e-15)) for k in np.flatnonzero(sign[:-1] * sign[1:] < 0)]
     found += [float(u) for u in t[sign == 0]]
-    return [u for u in found if float(centres.stretch(np.asarray(u))) > 0]
+    return [u for u in found if float(centres.pace(np.asarray(u))) > 0]
 
 
 def _samples(curve: Curve, samples: int) -> Reals:

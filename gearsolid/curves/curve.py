@@ -6,6 +6,7 @@ everything else (tangent, curvature, length, fit, area) follows from these.
 
 from abc import ABC, abstractmethod
 from dataclasses import dataclass
+from functools import cached_property
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -17,9 +18,16 @@ if TYPE_CHECKING:
 Reals = NDArray[np.float64]
 Points = NDArray[np.complex128]
 
-# A speed below this share of the curve's mean speed counts as zero: the curve has a cusp there, and the direction is
+# A speed below this share of the curve's usual speed counts as zero: the curve has a cusp there, and the direction is
 # taken from the second derivative.
-_STILL = 1e-7
+_STILL = 1e-8
+# Nearer to a cusp than this, in the same measure, the turning is lost in rounding; it is extrapolated from the side, at
+# this spacing as a share of the span.
+_SLOW = 1e-4
+_ASIDE = 1e-3
+
+# Spacing of the differences that stand in for an unknown second derivative, as a share of the span.
+_DIFFERENCE = 5e-4
 
 
 class Curve(ABC):
@@ -39,11 +47,24 @@ class Curve(ABC):
         """Derivative dz/dt [mm] for parameters t [-] of any shape."""
 
     def second(self, t: Reals) -> Points:
-        """Second derivative [mm], by central differences of `derivative` kept inside the span unless overridden."""
+        """Second derivative [mm], by fourth-order differences of `derivative` unless overridden.
+
+        The five points used lie inside the span, so that curves with an end of their reach there can be asked.
+        """
+        t = np.asarray(t, dtype=float)
         t0, t1 = self.span
-        step = 1e-5 * (t1 - t0)
-        t = np.clip(np.asarray(t, dtype=float), t0 + step, t1 - step)
-        return (self.derivative(t + step) - self.derivative(t - step)) / (2 * step)
+        step = _DIFFERENCE * (t1 - t0)
+        middle = np.clip(t, t0 + 2 * step, t1 - 2 * step)
+        s = (t - middle) / step
+        weights = (
+            (((4 * s - 6) * s - 2) * s + 2) / 24,
+            -(((4 * s - 3) * s - 8) * s + 4) / 6,
+            (4 * s**2 - 10) * s / 4,
+            -(((4 * s + 3) * s - 8) * s - 4) / 6,
+            (((4 * s + 6) * s - 2) * s - 2) / 24,
+        )
+        slopes = [w * self.derivative(middle + k * step) for k, w in zip(range(-2, 3), weights, strict=True)]
+        return np.asarray(np.sum(slopes, axis=0) / step, dtype=complex)
 
     def breaks(self) -> tuple[float, ...]:
         """Parameters inside the span where the direction or the curvature jumps."""
@@ -61,21 +82,40 @@ class Curve(ABC):
         t = np.asarray(t, dtype=float)
         velocity = self.derivative(t)
         speed = np.abs(velocity)
-        t0, t1 = self.span
-        mean = abs(self.end - self.start) / (t1 - t0) + np.max(speed, initial=0.0)
-        still = speed <= _STILL * mean
+        still = speed <= _STILL * self._usual_speed
         if np.any(still):
-            away = np.where(t < (t0 + t1) / 2, 1.0, -1.0) * self.second(t)
-            velocity = np.where(still, away, velocity)
+            velocity = np.where(still, self._inward(t) * self.second(t), velocity)
             speed = np.abs(velocity)
         return velocity / np.where(speed == 0, 1.0, speed)
 
+    def turning(self, t: Reals) -> Reals:
+        """Rate at which the direction turns [rad per unit of t], positive to the left; finite at a cusp."""
+        t = np.asarray(t, dtype=float)
+        slow = np.abs(self.derivative(t)) <= _SLOW * self._usual_speed
+        rate = self._plain_turning(t)
+        if np.any(slow):
+            step = _ASIDE * (self.span[1] - self.span[0]) * self._inward(t)
+            beside = [self._plain_turning(np.where(slow, t + k * step, t)) for k in (1, 2, 3)]
+            rate = np.where(slow, 3 * beside[0] - 3 * beside[1] + beside[2], rate)
+        return rate
+
     def curvature(self, t: Reals) -> Reals:
         """Signed curvature [1/mm], positive where the curve turns left; large but finite at a cusp."""
+        return self.turning(t) / np.maximum(np.abs(self.derivative(t)), 1e-12 * self._usual_speed)
+
+    @cached_property
+    def _usual_speed(self) -> float:
+        """Largest speed found at a few places, the measure for what is slow [mm per unit of t]."""
+        return float(np.fmax.reduce(np.abs(self.derivative(self.sample(12)[1:-1])), initial=0.0))
+
+    def _inward(self, t: Reals) -> Reals:
+        """+1 in the first half of the span, -1 in the second: the way to go from t without leaving it."""
+        return np.where(t < sum(self.span) / 2, 1.0, -1.0)
+
+    def _plain_turning(self, t: Reals) -> Reals:
         velocity = self.derivative(t)
-        speed = np.abs(velocity)
-        cross = np.imag(np.conj(velocity) * self.second(t))
-        return cross / np.maximum(speed, 1e-12) ** 3
+        squared = np.abs(velocity) ** 2
+        return np.imag(np.conj(velocity) * self.second(t)) / np.where(squared == 0, 1.0, squared)
 
     @property
     def start(self) -> complex:
@@ -197,9 +237,6 @@ class Section(Curve):
 
     def second(self, t: Reals) -> Points:
         return self.base.second(t)
-
-    def tangent(self, t: Reals) -> Points:
-        return self.base.tangent(t)
 
     def breaks(self) -> tuple[float, ...]:
         return tuple(b for b in self.base.breaks() if self.first < b < self.last)

@@ -45,7 +45,7 @@ class Envelope(Curve):
     def derivative(self, t: Reals) -> Points:
         p, tangent, velocity = self.carried.point(t), self.carried.tangent(t), self.carried.derivative(t)
         roll = self.motion.meet(p, tangent, self.branch)
-        rate = self.motion.meet_rate(p, tangent, self.carried.curvature(t), self.branch) * np.abs(velocity)
+        rate = self.motion.meet_rate(p, tangent, np.abs(velocity), self.carried.turning(t), self.branch)
         return self.motion.turn(roll) * velocity + self.motion.velocity(p, roll) * rate
 
     def side(self, t: Reals) -> Points:

@@ -21,6 +21,8 @@ _GRID_MARGIN = 1.01
 _FOOT_STEPS = 8
 # A curve that would stand still less than this share of its span beyond an end is written by a new parameter there.
 _CUSP_REACH = 0.03
+_ASIDE = 1e-3
+_BESIDE_ENDS = np.array([[0.0, 0.0], [_ASIDE, -_ASIDE]])
 # Share of the grading that knots take over from that parameter: measured to give the fewest poles at 0.1 um.
 _GRADING = 0.5
 # The end directions of a spline may lean from the curve's by this much [rad].
@@ -119,7 +121,8 @@ def _fit_span(curve: Curve, tol: float) -> Spline:
             f"the curve has no finite point on part of its span {t0:g} to {t1:g}; trim it to the part that exists"
         )
     warp = _parameter(curve)
-    directions = curve.tangent(np.array([t0, t1]))
+    # At a corner the end itself belongs to both sides.
+    directions = curve.tangent(np.array([t0, t1]) + 1e-9 * (t1 - t0) * np.array([1.0, -1.0]))
     best = np.inf
     for count in range(2, _POLE_BUDGET + 1):
         for degree in sorted({min(d, count - 1) for d in _DEGREES}):
@@ -158,9 +161,9 @@ def _parameter(curve: Curve) -> Callable[[Reals], Reals]:
     speed is then even. `lag` is the share of the span by which the cusp lies outside.
     """
     t0, t1 = curve.span
-    ends = np.array([t0, t1])
+    at_end, inside = np.abs(curve.derivative(np.array([[t0, t1], [t0, t1]]) + (t1 - t0) * _BESIDE_ENDS))
     with np.errstate(divide="ignore", invalid="ignore"):
-        lags = np.abs(curve.derivative(ends)) / (np.abs(curve.second(ends)) * (t1 - t0))
+        lags = _ASIDE * at_end / np.maximum(inside - at_end, 0.0)
     rate = Polynomial([1.0])
     if lags[0] < _CUSP_REACH:
         rate *= Polynomial([lags[0], 1.0])

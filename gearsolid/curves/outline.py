@@ -7,6 +7,7 @@ the next pitch (a toothed rim) or close on themselves (a pattern of pins or hole
 
 from dataclasses import dataclass
 from functools import cached_property
+from itertools import pairwise
 from typing import Literal
 
 import numpy as np
@@ -18,6 +19,9 @@ Role = Literal["flank", "fillet", "tip", "root", "pin", "hole"]
 
 # Pieces written by different formulas must meet this closely [mm], relative to the outline's size.
 _JOIN = 1e-9
+
+# Breaks closer than this share of the span are one.
+_DISTINCT = 1e-9
 
 _NODES, _WEIGHTS = np.polynomial.legendre.leggauss(24)
 
@@ -47,7 +51,9 @@ class Outline:
 
     def __post_init__(self) -> None:
         if self.order < 1 or not self.pieces:
-            raise DesignError(f"an outline needs at least one piece and one pitch, not {len(self.pieces)}, {self.order}")
+            raise DesignError(
+                f"an outline needs at least one piece and one pitch, not {len(self.pieces)}, {self.order}"
+            )
         ends = [p.curve.end for p in self.pieces]
         starts = [p.curve.start for p in self.pieces]
         size = max(map(abs, starts + ends))
@@ -111,9 +117,13 @@ class Outline:
 
 
 def smooth_spans(curve: Curve) -> list[tuple[float, float]]:
-    """The span cut at the curve's breaks."""
-    cuts = [curve.span[0], *curve.breaks(), curve.span[1]]
-    return list(zip(cuts[:-1], cuts[1:], strict=True))
+    """The span cut at the curve's breaks; breaks at its ends or found twice make no span of their own."""
+    t0, t1 = curve.span
+    cuts = [t0]
+    for b in sorted(curve.breaks()):
+        if min(b - cuts[-1], t1 - b) > _DISTINCT * (t1 - t0):
+            cuts.append(b)
+    return list(pairwise([*cuts, t1]))
 
 
 def _green(curve: Curve, panels: int = 8) -> float:

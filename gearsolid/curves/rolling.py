@@ -6,6 +6,8 @@ when the roll is zero. A point p of the carried body is given from the carried c
 envelope: then its normal passes through the pitch point.
 """
 
+import cmath
+import math
 from abc import ABC, abstractmethod
 from dataclasses import dataclass
 
@@ -13,6 +15,9 @@ import numpy as np
 
 from gearsolid.curves.curve import Points, Reals
 from gearsolid.errors import DesignError
+
+# A carried point this close to the pitch curve, as a share of its radius, lies on it.
+_ON_CIRCLE = 1e-12
 
 
 class Rolling(ABC):
@@ -38,6 +43,8 @@ class Rolling(ABC):
     def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
         """Roll at which a carried curve through p with unit `tangent` touches its envelope; nan where it never does.
 
+        Rolls of a carried circle lie from -pi to pi.
+
         Args:
             p: carried points [mm], any shape.
             tangent: unit tangents of the carried curve there, same shape.
@@ -45,8 +52,12 @@ class Rolling(ABC):
         """
 
     @abstractmethod
-    def meet_rate(self, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
-        """Derivative of `meet` by the arc length of the carried curve, given its signed curvature [1/mm]."""
+    def meet_rate(self, p: Points, tangent: Points, speed: Reals, turning: Reals, branch: int) -> Reals:
+        """Derivative of `meet` by the carried curve's parameter, given its speed [mm] and turning [rad] by the same."""
+
+    @abstractmethod
+    def rests(self, p: complex, first: float, last: float) -> tuple[float, ...]:
+        """Rolls between `first` and `last` at which carried point p is the pitch point and so stands still."""
 
 
 def _moment(p: Points, tangent: Points) -> Reals:
@@ -54,26 +65,38 @@ def _moment(p: Points, tangent: Points) -> Reals:
     return np.real(p * np.conj(tangent))
 
 
-def _moment_rate(p: Points, tangent: Points, curvature: Reals) -> Reals:
-    return 1 + curvature * np.imag(p * np.conj(tangent))
+def _moment_rate(p: Points, tangent: Points, speed: Reals, turning: Reals) -> Reals:
+    return speed + turning * np.imag(p * np.conj(tangent))
 
 
-def _circle_meet(radius: float, p: Points, tangent: Points, branch: int) -> Reals:
-    with np.errstate(invalid="ignore"):
-        lean = np.arccos(-_moment(p, tangent) / radius)
-    roll = branch * lean - np.angle(tangent)
-    return np.angle(np.exp(1j * roll))
+class _CarriedCircle(Rolling):
+    """What the motions of a circular carried pitch curve share: its signed radius decides where it touches."""
 
+    carried: float
 
-def _circle_meet_rate(radius: float, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
-    h = _moment(p, tangent)
-    with np.errstate(invalid="ignore", divide="ignore"):
-        slope = np.sign(radius) / np.sqrt(radius**2 - h**2)
-        return branch * slope * _moment_rate(p, tangent, curvature) - curvature
+    def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
+        with np.errstate(invalid="ignore"):
+            lean = np.arccos(-_moment(p, tangent) / self.carried)
+        roll = branch * lean - np.angle(tangent)
+        return np.angle(np.exp(1j * roll))
+
+    def meet_rate(self, p: Points, tangent: Points, speed: Reals, turning: Reals, branch: int) -> Reals:
+        h = _moment(p, tangent)
+        with np.errstate(invalid="ignore", divide="ignore"):
+            slope = np.sign(self.carried) / np.sqrt(self.carried**2 - h**2)
+            return branch * slope * _moment_rate(p, tangent, speed, turning) - turning
+
+    def rests(self, p: complex, first: float, last: float) -> tuple[float, ...]:
+        if abs(abs(p) - abs(self.carried)) > _ON_CIRCLE * abs(self.carried):
+            return ()
+        # The pitch point is -carried exp(-i roll) in the carried frame.
+        roll = -cmath.phase(-p / self.carried)
+        turns = range(math.ceil((first - roll) / (2 * math.pi)), math.floor((last - roll) / (2 * math.pi)) + 1)
+        return tuple(roll + 2 * math.pi * n for n in turns)
 
 
 @dataclass(frozen=True)
-class CircleOnCircle(Rolling):
+class CircleOnCircle(_CarriedCircle):
     """A circle carried round a fixed circle centred at the origin; the roll is the carried circle's own turn [rad].
 
     Args:
@@ -116,15 +139,9 @@ class CircleOnCircle(Rolling):
     def turn(self, roll: Reals) -> Points:
         return np.exp(1j * (1 + self.orbit) * np.asarray(roll))
 
-    def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
-        return _circle_meet(self.carried, p, tangent, branch)
-
-    def meet_rate(self, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
-        return _circle_meet_rate(self.carried, p, tangent, curvature, branch)
-
 
 @dataclass(frozen=True)
-class CircleOnLine(Rolling):
+class CircleOnLine(_CarriedCircle):
     """A circle carried along the fixed line x = 0; the roll is its own turn [rad].
 
     Args:
@@ -148,12 +165,6 @@ class CircleOnLine(Rolling):
 
     def turn(self, roll: Reals) -> Points:
         return np.exp(1j * np.asarray(roll))
-
-    def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
-        return _circle_meet(self.carried, p, tangent, branch)
-
-    def meet_rate(self, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
-        return _circle_meet_rate(self.carried, p, tangent, curvature, branch)
 
 
 @dataclass(frozen=True)
@@ -188,7 +199,11 @@ class LineOnCircle(Rolling):
         with np.errstate(divide="ignore", invalid="ignore"):
             return -_moment(p, tangent) / np.imag(tangent)
 
-    def meet_rate(self, p: Points, tangent: Points, curvature: Reals, branch: int) -> Reals:
+    def meet_rate(self, p: Points, tangent: Points, speed: Reals, turning: Reals, branch: int) -> Reals:
         h, across = _moment(p, tangent), np.imag(tangent)
         with np.errstate(divide="ignore", invalid="ignore"):
-            return -_moment_rate(p, tangent, curvature) / across + h * curvature * np.real(tangent) / across**2
+            return -_moment_rate(p, tangent, speed, turning) / across + h * turning * np.real(tangent) / across**2
+
+    def rests(self, p: complex, first: float, last: float) -> tuple[float, ...]:
+        on_line = abs(p.real) <= _ON_CIRCLE * self.fixed and first <= -p.imag <= last
+        return (-p.imag,) if on_line else ()

@@ -31,6 +31,9 @@ class Trace(Curve):
     def span(self) -> tuple[float, float]:
         return self.first, self.last
 
+    def breaks(self) -> tuple[float, ...]:
+        return self.motion.rests(self.tracer, self.first, self.last)
+
     def point(self, t: Reals) -> Points:
         return self.motion.place(np.asarray(self.tracer), np.asarray(t, dtype=float))
 
