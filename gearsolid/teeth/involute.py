@@ -12,11 +12,8 @@ from gearsolid.curves.outline import Outline, Piece
 from gearsolid.curves.primitives import Arc, Ellipse, Segment
 from gearsolid.curves.rolling import LineOnCircle
 from gearsolid.errors import DesignError
-from gearsolid.teeth.involute_member import InvoluteMember
+from gearsolid.teeth.involute_member import NO_LAND, InvoluteMember
 from gearsolid.teeth.involute_relations import inv, inverse_inv, reach
-
-# A flat shorter than this share of the module is left out of the outline.
-_NO_LAND = 1e-9
 
 
 @dataclass(frozen=True)
@@ -60,7 +57,7 @@ class InvoluteGear(InvoluteMember):
                 f"tip radius is {self.tip_radius:.5g} mm; it must lie beyond the base circle, {self.base_radius:.5g} "
                 f"mm, and the root, {self.root_radius:.5g} mm: take a larger shift, more teeth or less tip shortening"
             )
-        if self.tip_land <= _NO_LAND * self.module:
+        if self.tip_land <= NO_LAND * self.module:
             short = self.tip_radius - self.pointed_radius
             raise DesignError(
                 f"tip land is {self.tip_land:.4g} mm at tip radius {self.tip_radius:.5g} mm; the flanks meet at radius "
@@ -191,6 +188,6 @@ class InvoluteGear(InvoluteMember):
             Piece(Mirrored(flank), "flank"),
             Piece(Mirrored(fillet), "fillet"),
         ]
-        if self._half_root_land > _NO_LAND * self.module:
+        if self._half_root_land > NO_LAND * self.module:
             pieces.append(Piece(Arc(0, self.root_radius, root - land, root + land), "root"))
         return Outline(tuple(pieces), self.teeth)

@@ -9,6 +9,9 @@ from gearsolid.errors import DesignError
 from gearsolid.teeth.involute_relations import inv, transverse_angle
 from gearsolid.teeth.rack import ISO53_A, BasicRack
 
+# A flat shorter than this share of the module counts as none.
+NO_LAND = 1e-9
+
 
 @dataclass(frozen=True)
 class InvoluteMember:

@@ -6,9 +6,10 @@ from involute_shapes import pinion_tool, polygon
 from shapely.geometry import MultiPoint
 
 from gearsolid.errors import DesignError
-from gearsolid.teeth.internal import InternalGear, PinionCutter
+from gearsolid.teeth.internal import InternalGear
 from gearsolid.teeth.involute import InvoluteGear
 from gearsolid.teeth.involute_relations import active_radius, centre_distance, inv, working_angle
+from gearsolid.teeth.pinion_cutter import PinionCutter
 from gearsolid.teeth.rack import ISO53_D, BasicRack
 from gearsolid.teeth.ring_margins import ring_margins
 
