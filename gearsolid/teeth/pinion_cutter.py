@@ -165,15 +165,15 @@ class Generation:
             DesignError: says which rule is broken.
         """
         z0, m = self.pinion.teeth, self.ring.module
-        if self.pinion.tip_radius - self.rounding <= self.pinion.base_radius or self.half_land < 0:
-            raise DesignError(
-                f"a rounding of {self.rounding:.4g} mm does not fit the tip of a cutter with {z0} teeth of module "
-                f"{m:g} mm: take a smaller rounding, more cutter teeth or a smaller cutter shift"
-            )
         if self.foot_reach < -NO_LAND * m:
             raise DesignError(
                 f"a cutter with {z0} teeth forms no involute at the ring's tip: it falls {-self.foot_reach:.4g} mm "
                 "short on the base tangent: take more cutter teeth, a larger cutter shift or a shorter ring tip"
+            )
+        if self.pinion.tip_radius - self.rounding <= self.pinion.base_radius or self.half_land < 0:
+            raise DesignError(
+                f"a rounding of {self.rounding:.4g} mm does not fit the tip of a cutter with {z0} teeth of module "
+                f"{m:g} mm: take a smaller rounding, more cutter teeth or a smaller cutter shift"
             )
         if self.margins.trochoid < 0:
             raise DesignError(
