@@ -1,5 +1,6 @@
-"""From samples to exact places: slide a probe point along its piece until the distance to the target is least."""
+"""From samples to exact places: slide a probe point along its boundary until the distance to the target is least."""
 
+from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -8,28 +9,28 @@ from gearsolid.contact.view import Touching, View
 from gearsolid.curves.curve import Points, Reals
 from gearsolid.curves.field import Integers, Near
 
-_SLIDES = 7
+# Places looked at together when a bracket is narrowed, as shares of it, and how often it is narrowed.
+_GRID = np.linspace(0, 1, 9)[:, None]
+_NARROWINGS = 2
 
 
 @dataclass(frozen=True)
 class Spots:
-    """Places on a probe, each free to slide between two parameters of its piece, all arrays of shape (n,).
+    """Places on a probe, each free to slide between two places of its boundary, all arrays of shape (n,).
 
     Args:
         psi: input angle [rad].
         extra: extra turn of b [rad].
         pitch: pitch of the probe.
-        piece: piece of the probe.
-        t: parameter there [-].
-        low: least parameter allowed [-].
-        high: greatest parameter allowed [-].
+        place: sample index + fraction.
+        low: least place allowed.
+        high: greatest place allowed.
     """
 
     psi: Reals
     extra: Reals
     pitch: Integers
-    piece: Integers
-    t: Reals
+    place: Reals
     low: Reals
     high: Reals
 
@@ -37,16 +38,22 @@ class Spots:
         """The chosen rows."""
         return Spots(*(getattr(self, name)[index] for name in self.__dataclass_fields__))
 
+    def repeated(self, times: int) -> "Spots":
+        """All rows, `times` over."""
+        return Spots(*(np.tile(getattr(self, name), times) for name in self.__dataclass_fields__))
 
-def spots_at(view: View, touching: Touching, rows: Integers, psi: Reals, extra: Reals) -> Spots:
-    """The sampled rows as spots that may slide to the neighbouring samples."""
-    cloud = view.probe.cloud
-    j = touching.sample[rows]
-    t = cloud.t[j]
-    low = np.where(cloud.edge[j] == -1, t, cloud.t[np.maximum(j - 1, 0)])
-    high = np.where(cloud.edge[j] == 1, t, cloud.t[np.minimum(j + 1, cloud.t.size - 1)])
-    pose = touching.pose[rows]
-    return Spots(psi[pose], extra[pose], touching.pitch[rows], cloud.piece[j], t, low, high)
+
+def around(view: View, spots: Spots, freedom: int) -> Spots:
+    """The spots free to slide `freedom` samples either way from where they are, within their smooth span."""
+    span = view.spans[np.floor(spots.place).astype(np.int64)]
+    low, high = np.maximum(spots.place - freedom, span[:, 0]), np.minimum(spots.place + freedom, span[:, 1])
+    return replace(spots, low=low, high=high)
+
+
+def spots_at(view: View, touching: Touching, rows: Integers, psi: Reals, extra: Reals, freedom: int) -> Spots:
+    """The sampled rows as spots that may slide `freedom` samples either way."""
+    place, pose = touching.sample[rows] * 1.0, touching.pose[rows]
+    return around(view, Spots(psi[pose], extra[pose], touching.pitch[rows], place, place, place), freedom)
 
 
 @dataclass(frozen=True)
@@ -55,7 +62,7 @@ class Measure:
 
     Args:
         near: nearest target points, in the target's frame.
-        along: derivative of the distance by the probe parameter.
+        along: derivative of the distance by the probe's place.
         closing: derivative of the distance by an extra turn of b [mm/rad].
         advancing: derivative of the distance by the input angle [mm/rad].
     """
@@ -69,7 +76,8 @@ class Measure:
 def measure(view: View, spots: Spots) -> Measure:
     """Exact distances and their derivatives at the spots."""
     turn, axis = view.frame(spots.psi, spots.extra)
-    own, slope = view.probe_point(spots.piece, spots.t, spots.pitch)
+    own, slope = view.probe.evaluate(spots.place)
+    turn = turn * np.exp(1j * view.probe.outline.pitch_angle * spots.pitch)
     z = axis + turn * own
     near = view.target.near(z)
 
@@ -79,22 +87,37 @@ def measure(view: View, spots: Spots) -> Measure:
     return Measure(near, rate(turn * slope), rate(view.turning(z, axis)), rate(view.advancing(z, axis)))
 
 
+def settle(slope: Callable[[Reals], Reals], low: Reals, high: Reals) -> Reals:
+    """Where functions have their minimum between two bounds, element by element, from their derivatives.
+
+    The bounds are narrowed by looking at several places at once, then by the secant; a derivative that does not rise
+    through zero sends the answer to the lower end.
+
+    Args:
+        slope: derivative as a function of the parameter; takes and gives arrays of shape (k, n).
+        low: lower bounds, shape (n,).
+        high: upper bounds, shape (n,).
+    """
+    column = np.arange(low.size)
+    for _ in range(_NARROWINGS):
+        t = low + (high - low) * _GRID
+        along = slope(t)
+        rising = (along[:-1] < 0) & (along[1:] >= 0)
+        k = np.argmax(rising, axis=0)
+        bracketed = rising[k, column]
+        k = np.where(bracketed, k, np.where(along[0] >= 0, 0, _GRID.size - 2))
+        low, high = t[k, column], t[k + 1, column]
+        at_low, at_high = along[k, column], along[k + 1, column]
+    secant = low - at_low * (high - low) / np.where(bracketed, at_high - at_low, 1.0)
+    return np.where(bracketed, secant, np.where(at_low >= 0, low, high))
+
+
 def slide(view: View, spots: Spots) -> tuple[Spots, Measure]:
-    """Each spot moved to where its distance is least between its limits (bracketed secant on the derivative)."""
-    low, high = spots.low, spots.high
-    at_low = measure(view, replace(spots, t=low)).along
-    at_high = measure(view, replace(spots, t=high)).along
-    for _ in range(_SLIDES):
-        inside = (at_low < 0) & (at_high > 0)
-        span = np.where(inside, at_high - at_low, 1.0)
-        t = np.where(inside, low - at_low * (high - low) / span, np.where(at_low >= 0, low, high))
-        along = measure(view, replace(spots, t=t)).along
-        falling = along < 0
-        # Illinois rule: an end kept twice has its value halved, so that the secant cannot stall.
-        at_low, at_high = (
-            np.where(inside & falling, along, np.where(inside, at_low / 2, at_low)),
-            np.where(inside & ~falling, along, np.where(inside, at_high / 2, at_high)),
-        )
-        low, high = np.where(inside & falling, t, low), np.where(inside & ~falling, t, high)
-    spots = replace(spots, t=t)
+    """Each spot moved to where its distance is least between its limits."""
+
+    def along(place: Reals) -> Reals:
+        many = replace(spots.repeated(_GRID.size), place=place.ravel())
+        return measure(view, many).along.reshape(place.shape)
+
+    spots = replace(spots, place=settle(along, spots.low, spots.high))
     return spots, measure(view, spots)

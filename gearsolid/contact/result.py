@@ -75,7 +75,9 @@ class RollResult:
     def sentence(self) -> str:
         """One line: verdict, pair, amount, angle and place."""
         c = self.worst
-        amount = f"depth {-c.clearance:.4f} mm" if c.verdict is Verdict.BINDS else f"least clearance {c.clearance:.4f} mm"
+        amount = (
+            f"depth {-c.clearance:.4f} mm" if c.verdict is Verdict.BINDS else f"least clearance {c.clearance:.4f} mm"
+        )
         return (
             f"{c.verdict.value}: {c.name_a} with {c.name_b}, {amount} at input angle {c.input_angle:.3f} deg, "
             f"x {c.place.real:.3f} y {c.place.imag:.3f} mm ({c.roles[0]} on {c.roles[1]})"

@@ -1,7 +1,7 @@
-"""Signed distance from an outline: a cloud of samples finds the neighbourhood, the exact pieces give the number.
+"""Signed distance from an outline, positive outside the material and negative inside.
 
-The distance is positive outside the material, negative inside. Queries are folded into one pitch, so the cost does not
-depend on the order of the outline.
+One pitch is sampled and joined by quintic pieces that share point and two derivatives with the exact curves; the error of
+that stand-in is measured and kept. Queries are folded into one pitch, so their cost does not depend on the order.
 """
 
 from dataclasses import dataclass
@@ -13,36 +13,43 @@ from scipy.spatial import cKDTree
 
 from gearsolid.curves.curve import Points, Reals
 from gearsolid.curves.outline import Outline, smooth_spans
+from gearsolid.errors import ToleranceError
 
 Integers = NDArray[np.int64]
 
-_SAMPLES_PER_PITCH = 160
-_FEWEST_PER_SPAN = 13
+# Largest error of the quintic stand-in, relative to the outline's size: far below any gap that is asked about.
+_STAND_IN = 2e-9
+_SAMPLES_PER_PITCH = 96
+_MOST_SAMPLES_PER_PITCH = 5000
+_FEWEST_PER_SPAN = 9
+_NEWTON_STEPS = 4
 
 
 @dataclass(frozen=True)
 class Cloud:
-    """Samples of one pitch, in travel order.
+    """Samples of one pitch in travel order, and the quintic from each to the next.
 
     Args:
         piece: piece index of each sample, shape (n,).
-        t: parameter in that piece [-], shape (n,).
         point: [mm], shape (n,).
         tangent: unit direction of travel, shape (n,).
         curvature: signed curvature [1/mm], limited by the sample spacing, shape (n,).
         hand: direction that decides the side at span ends: the mean of the two tangents that meet there, shape (n,).
         edge: -1 at the first sample of a span, +1 at its last, else 0, shape (n,).
-        spacing: distance to the farther neighbour on the same span [mm], shape (n,).
+        quintic: coefficients to the next sample in powers 0 to 5 of the fraction travelled, shape (6, n).
+        corner: whether the direction of travel jumps at the sample, shape (n,).
+        error: largest distance of the quintics from the exact curve, measured half way between samples [mm].
     """
 
     piece: Integers
-    t: Reals
     point: Points
     tangent: Points
     curvature: Reals
     hand: Points
     edge: Integers
-    spacing: Reals
+    quintic: Points
+    corner: NDArray[np.bool_]
+    error: float
 
 
 @dataclass(frozen=True)
@@ -52,54 +59,40 @@ class Near:
     Args:
         distance: signed [mm], positive outside the material.
         piece: piece index.
-        t: parameter in the piece [-].
         foot: nearest boundary point, in the outline's frame [mm].
         outward: unit direction of growing distance.
     """
 
     distance: Reals
     piece: Integers
-    t: Reals
     foot: Points
     outward: Points
 
 
 class Field:
-    """Distance queries on one outline."""
+    """Distance queries on one outline. Places on the boundary are told by a real number: sample index + fraction."""
 
     def __init__(self, outline: Outline) -> None:
         self.outline = outline
 
     @cached_property
     def cloud(self) -> Cloud:
-        """Samples of one pitch, denser where the pieces' own parameters are slow (cusps)."""
-        spans = [(k, s) for k, p in enumerate(self.outline.pieces) for s in smooth_spans(p.curve)]
-        lengths = [_chord_length(self.outline, k, s) for k, s in spans]
-        columns: list[list[np.ndarray]] = [[] for _ in range(7)]
-        for (k, (t0, t1)), length in zip(spans, lengths, strict=True):
-            count = max(_FEWEST_PER_SPAN, int(np.ceil(_SAMPLES_PER_PITCH * length / sum(lengths))) + 1)
-            curve = self.outline.pieces[k].curve
-            t = np.linspace(t0, t1, count)
-            inside = np.clip(t, t0 + 1e-9 * (t1 - t0), t1 - 1e-9 * (t1 - t0))
-            point, tangent = curve.point(t), curve.tangent(inside)
-            gaps = np.abs(np.diff(point))
-            spacing = np.maximum(np.append(gaps, gaps[-1]), np.append(gaps[0], gaps))
-            limit = 0.5 / spacing
-            edge = np.zeros(count, dtype=np.int64)
-            edge[0], edge[-1] = -1, 1
-            values = (np.full(count, k), t, point, tangent, np.clip(curve.curvature(inside), -limit, limit), edge, spacing)
-            for column, value in zip(columns, values, strict=True):
-                column.append(value)
-        piece, t, point, tangent, curvature, edge, spacing = map(np.concatenate, columns)
-        hand = tangent.copy()
-        first, last = np.flatnonzero(edge == -1), np.flatnonzero(edge == 1)
-        meets = np.roll(last, 1)
-        turn = np.ones(first.size, dtype=complex)
-        if self.outline.is_chain:
-            turn[0] = 1 / self.outline.step
-        hand[first] = tangent[first] + tangent[meets] * turn
-        hand[meets] = tangent[meets] + tangent[first] / turn
-        return Cloud(piece, t, point, tangent, curvature, hand, edge, spacing)
+        """Samples of one pitch, denser where the pieces' own parameters are slow (cusps).
+
+        Raises:
+            ToleranceError: the outline is too rugged for the stand-in.
+        """
+        size, count = self.outline.r_max, _SAMPLES_PER_PITCH
+        while True:
+            cloud = _sampled(self.outline, count)
+            if cloud.error <= _STAND_IN * size:
+                return cloud
+            count *= 2
+            if count > _MOST_SAMPLES_PER_PITCH:
+                raise ToleranceError(
+                    f"{_MOST_SAMPLES_PER_PITCH} samples a pitch leave an error of {cloud.error:.3g} mm; "
+                    f"{_STAND_IN * size:.3g} mm is allowed: split the outline where its curvature is extreme"
+                )
 
     @cached_property
     def _turns(self) -> Points:
@@ -124,107 +117,144 @@ class Field:
         pitch = self.outline.pitch_angle
         return np.exp(1j * pitch * np.round((np.angle(z) - self._middle) / pitch))
 
-    def _candidates(self, folded: Points) -> tuple[Integers, Points]:
-        """The two nearest samples of each folded point and the neighbour-pitch factor they stand at."""
+    def _candidates(self, z: Points) -> tuple[Integers, Points, Points]:
+        """The two nearest samples, the query points in the frame of those samples, and the factors back."""
+        turned = self.fold(z)
+        folded = z / turned
         _, index = self._tree.query(np.column_stack([folded.real, folded.imag]), k=2)
-        size = self.cloud.point.size
-        return index % size, self._turns[index // size]
+        factor = self._turns[index // self.cloud.point.size]
+        return index % self.cloud.point.size, folded[:, None] / factor, turned[:, None] * factor
 
-    def rough(self, z: Points) -> tuple[Reals, Integers]:
-        """Signed distance from the osculating circles of the nearest samples.
+    def rough(self, z: Points) -> tuple[Reals, Points]:
+        """Signed distance and outward direction from the osculating circles of the nearest samples.
 
         Args:
-            z: query points [mm], any shape.
+            z: query points [mm], shape (n,).
 
         Returns:
-            Signed distances [mm], and the index of the sample used, both of the shape of z. Close to the boundary the
-            error is of third order in the sample spacing.
+            Signed distances [mm] and unit directions, shape (n,). Close to the boundary the error of the distance is of
+            third order in the sample spacing.
         """
-        z = np.asarray(z, dtype=complex)
-        flat = z.ravel()
-        folded = flat / self.fold(flat)
-        index, factor = self._candidates(folded)
-        local = folded[:, None] / factor
+        if z.size == 0:
+            return np.empty(0), np.empty(0, dtype=complex)
+        index, local, back = self._candidates(z)
         distance = _osculating_distance(self.cloud, index, local)
-        best = np.argmin(np.abs(distance), axis=1)[:, None]
-        return (
-            np.take_along_axis(distance, best, 1).reshape(z.shape),
-            np.take_along_axis(index, best, 1).reshape(z.shape),
-        )
+        best = np.arange(z.size), np.argmin(np.abs(distance), axis=1)
+        distance, index, back = distance[best], index[best], back[best]
+        return distance, -1j * self.cloud.tangent[index] * back
 
     def near(self, z: Points) -> Near:
-        """Nearest boundary points on the exact pieces.
+        """Nearest boundary points.
 
         Args:
-            z: query points [mm], any shape.
+            z: query points [mm], shape (n,).
         """
-        z = np.asarray(z, dtype=complex)
-        flat = z.ravel()
-        turned = self.fold(flat)
-        index, factor = self._candidates(flat / turned)
-        local = (flat / turned)[:, None] / factor
-        piece, t = self.cloud.piece[index], self._foot(local, index)
-        foot = self.evaluate(piece, t)[0]
+        index, local, back = self._candidates(np.asarray(z, dtype=complex))
+        cloud = self.cloud
+        ahead = np.real((local - cloud.point[index]) * np.conj(cloud.tangent[index])) >= 0
+        start = np.clip(np.where(ahead, index, index - 1), index - (cloud.edge[index] != -1), index)
+        start = np.where((cloud.edge[index] == 1) & (start == index), index - 1, start)
+        fraction = self._foot(local, start, (start != index) * 1.0)
+        foot, slope, _ = self._along(start, fraction)
         gap = np.abs(local - foot)
-        best = np.argmin(gap, axis=1)[:, None]
-
-        def pick(values: np.ndarray) -> np.ndarray:
-            return np.take_along_axis(values, best, 1)[:, 0]
-
-        local, foot, gap, piece, t, index, factor = map(pick, (local, foot, gap, piece, t, index, factor))
-        hand = self._hand(piece, t, index)
+        best = np.arange(gap.shape[0]), np.argmin(gap, axis=1)
+        local, back, start, fraction, foot, slope, gap = (
+            v[best] for v in (local, back, start, fraction, foot, slope, gap)
+        )
+        hand = self._hand(start, fraction, slope)
         normal = -1j * hand / np.abs(hand)
         sign = np.where(np.real((local - foot) * np.conj(normal)) < 0, -1.0, 1.0)
         far = gap > 1e-9
         outward = np.where(far, sign * (local - foot) / np.where(far, gap, 1.0), normal)
-        place = turned * factor
-        return Near(
-            (sign * gap).reshape(z.shape),
-            piece.reshape(z.shape),
-            t.reshape(z.shape),
-            (foot * place).reshape(z.shape),
-            (outward * place).reshape(z.shape),
-        )
+        return Near(sign * gap, cloud.piece[start], foot * back, outward * back)
 
-    def evaluate(self, piece: Integers, t: Reals) -> tuple[Points, Points, Points]:
-        """Point, derivative and second derivative on pieces chosen element by element."""
-        out = tuple(np.empty(np.shape(t), dtype=complex) for _ in range(3))
-        for k, p in enumerate(self.outline.pieces):
-            mine = piece == k
-            if np.any(mine):
-                values = (p.curve.point(t[mine]), p.curve.derivative(t[mine]), p.curve.second(t[mine]))
-                for column, value in zip(out, values, strict=True):
-                    column[mine] = value
-        return out
+    def evaluate(self, place: Reals) -> tuple[Points, Points]:
+        """Boundary point of the first pitch and its derivative by the place (sample index + fraction), any shape."""
+        start = np.minimum(np.floor(place).astype(np.int64), self.cloud.point.size - 1)
+        start = np.where(self.cloud.edge[start] == 1, start - 1, start)
+        z, dz, _ = self._along(start, place - start)
+        return z, dz
 
-    def tangent(self, piece: Integers, t: Reals) -> Points:
-        """Unit direction of travel on pieces chosen element by element."""
-        out = np.empty(np.shape(t), dtype=complex)
-        for k, p in enumerate(self.outline.pieces):
-            mine = piece == k
-            if np.any(mine):
-                out[mine] = p.curve.tangent(t[mine])
-        return out
+    def piece_at(self, place: Reals) -> Integers:
+        """Piece index at a place."""
+        return self.cloud.piece[np.floor(place).astype(np.int64)]
 
-    def _foot(self, local: Points, index: Integers) -> Reals:
-        """Parameters of the feet near the given samples, by Newton steps kept between the neighbouring samples."""
+    def _along(self, start: Integers, u: Reals) -> tuple[Points, Points, Points]:
+        """Point and two derivatives by the fraction on the given quintics."""
+        c0, c1, c2, c3, c4, c5 = self.cloud.quintic[:, start]
+        z = c0 + u * (c1 + u * (c2 + u * (c3 + u * (c4 + u * c5))))
+        dz = c1 + u * (2 * c2 + u * (3 * c3 + u * (4 * c4 + u * (5 * c5))))
+        ddz = 2 * c2 + u * (6 * c3 + u * (12 * c4 + u * (20 * c5)))
+        return z, dz, ddz
+
+    def _foot(self, local: Points, start: Integers, u: Reals) -> Reals:
+        """Fractions of the feet on the given quintics, by Newton steps kept between 0 and 1."""
+        for _ in range(_NEWTON_STEPS):
+            z, dz, ddz = self._along(start, u)
+            away = z - local
+            miss = np.real(away * np.conj(dz))
+            square = np.abs(dz) ** 2
+            slope = square + np.real(away * np.conj(ddz))
+            # Beyond the centre of curvature Newton would climb; a plain step along the tangent keeps going downhill.
+            slope = np.where(slope > 0.1 * square, slope, square)
+            u = np.clip(u - miss / np.where(slope > 0, slope, 1.0), 0.0, 1.0)
+        return u
+
+    def _hand(self, start: Integers, fraction: Reals, slope: Points) -> Points:
         cloud = self.cloud
-        t = cloud.t[index]
-        low = np.where(cloud.edge[index] == -1, t, cloud.t[np.maximum(index - 1, 0)])
-        high = np.where(cloud.edge[index] == 1, t, cloud.t[np.minimum(index + 1, cloud.t.size - 1)])
-        piece = cloud.piece[index]
-        for _ in range(6):
-            z, dz, ddz = self.evaluate(piece, t)
-            miss = np.real((z - local) * np.conj(dz))
-            slope = np.abs(dz) ** 2 + np.real((z - local) * np.conj(ddz))
-            bad = slope <= 1e-12 * np.abs(dz) ** 2
-            step = np.where(bad, 0.0, -miss / np.where(bad, 1.0, slope))
-            t = np.clip(t + step, low, high)
-        return t
+        still = np.abs(slope) < 1e-9 * self.outline.r_max
+        hand = np.where(still, cloud.tangent[start], slope)
+        hand = np.where((fraction == 0) & (cloud.edge[start] == -1), cloud.hand[start], hand)
+        return np.where((fraction == 1) & (cloud.edge[start + 1] == 1), cloud.hand[start + 1], hand)
 
-    def _hand(self, piece: Integers, t: Reals, index: Integers) -> Points:
-        at_edge = (self.cloud.edge[index] != 0) & (t == self.cloud.t[index])
-        return np.where(at_edge, self.cloud.hand[index], self.tangent(piece, t))
+
+def _sampled(outline: Outline, per_pitch: int) -> Cloud:
+    spans = [(k, s) for k, p in enumerate(outline.pieces) for s in smooth_spans(p.curve)]
+    lengths = np.array([_chord_length(outline, k, s) for k, s in spans])
+    counts = np.maximum(_FEWEST_PER_SPAN, np.ceil(per_pitch * lengths / lengths.sum()).astype(int) + 1)
+    columns = [_sampled_span(outline, k, s, n) for (k, s), n in zip(spans, counts, strict=True)]
+    piece, point, tangent, curvature, edge, quintic, error = (
+        np.concatenate([c[i] for c in columns], axis=-1) for i in range(len(columns[0]))
+    )
+    hand = tangent.copy()
+    first, last = np.flatnonzero(edge == -1), np.flatnonzero(edge == 1)
+    meets = np.roll(last, 1)
+    turn = np.ones(first.size, dtype=complex)
+    turn[0] = 1 / outline.step if outline.is_chain else 1.0
+    hand[first] = tangent[first] + tangent[meets] * turn
+    hand[meets] = tangent[meets] + tangent[first] / turn
+    corner = np.abs(hand) < (2 - 1e-9) * (edge != 0)
+    # Where two spans form a cusp their tangents cancel; either one then decides the side.
+    hand = np.where(np.abs(hand) < 1e-6, tangent, hand)
+    return Cloud(piece, point, tangent, curvature, hand, edge, quintic, corner, float(error.max()))
+
+
+def _sampled_span(outline: Outline, piece: int, span: tuple[float, float], count: int) -> tuple[np.ndarray, ...]:
+    curve = outline.pieces[piece].curve
+    t0, t1 = span
+    t = np.linspace(t0, t1, count)
+    step = (t1 - t0) / (count - 1)
+    inside = np.clip(t, t0 + 1e-9 * (t1 - t0), t1 - 1e-9 * (t1 - t0))
+    point, slope, tangent = curve.point(t), curve.derivative(inside) * step, curve.tangent(inside)
+    chord = np.diff(point)
+    gaps = np.abs(chord)
+    limit = 0.5 / np.maximum(np.append(gaps, gaps[-1]), np.append(gaps[0], gaps))
+    curvature = np.clip(curve.curvature(inside), -limit, limit)
+    quintic = np.zeros((6, count), dtype=complex)
+    bend = curve.second(inside) * step**2
+    (m0, m1), (a0, a1) = (slope[:-1], slope[1:]), (bend[:-1], bend[1:])
+    quintic[0] = point
+    quintic[1, :-1] = m0
+    quintic[2, :-1] = a0 / 2
+    quintic[3, :-1] = 10 * chord - 6 * m0 - 4 * m1 - 1.5 * a0 + a1 / 2
+    quintic[4, :-1] = -15 * chord + 8 * m0 + 7 * m1 + 1.5 * a0 - a1
+    quintic[5, :-1] = 6 * chord - 3 * (m0 + m1) - (a0 - a1) / 2
+    middle = 0.5 ** np.arange(6) @ quintic[:, :-1]
+    exact, direction = curve.point(t[:-1] + step / 2), curve.tangent(t[:-1] + step / 2)
+    error = np.append(np.abs(np.imag((middle - exact) * np.conj(direction))), 0.0)
+    edge = np.zeros(count, dtype=np.int64)
+    edge[0], edge[-1] = -1, 1
+    return np.full(count, piece), point, tangent, curvature, edge, quintic, error
 
 
 def _chord_length(outline: Outline, piece: int, span: tuple[float, float]) -> float:

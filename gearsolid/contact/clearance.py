@@ -1,0 +1,139 @@
+"""Least distance between two outlines while they turn through one pitch."""
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from gearsolid.contact.closest import Measure, Spots, measure, settle, slide, spots_at
+from gearsolid.contact.view import Touching, View, views
+from gearsolid.curves.curve import Reals
+from gearsolid.curves.field import Integers
+from gearsolid.pairs.engagement import Engagement
+
+POSES = 32
+
+# Samples this much [pitch lengths] above the least distance of a pose are still refined: the sampled distance is off by
+# the square of the sample spacing, which is about 1/160 of a pitch.
+_SLACK = 2e-4
+
+# Lowest samples of a pose and view that are refined to the exact distance.
+_REFINED = 4
+
+# Lowest spots followed between the sampled poses.
+_FOLLOWED = 6
+
+
+@dataclass(frozen=True)
+class Least:
+    """The least distance and where it is.
+
+    Args:
+        distance: signed [mm]; negative is a depth of overlap.
+        psi: input angle [rad].
+        place: in the common frame [mm].
+        roles: what touches on a and on b.
+    """
+
+    distance: float
+    psi: float
+    place: complex
+    roles: tuple[str, str]
+
+
+@dataclass(frozen=True)
+class Sweep:
+    """Both views of an engagement sampled over one pitch.
+
+    Args:
+        psi: input angles [rad], shape (m,).
+        seen: for each view, its near samples.
+        margin: how far from the target samples were looked for [mm].
+        pitch_length: length of the pitch used to scale tolerances [mm].
+    """
+
+    psi: Reals
+    seen: tuple[tuple[View, Touching], ...]
+    margin: float
+    pitch_length: float
+
+
+def sweep(e: Engagement, poses: int = POSES) -> Sweep:
+    """Samples of both outlines near each other at evenly spread input angles of one pitch.
+
+    The search widens until it finds something, so parts that stay far apart get a distance too.
+    """
+    psi = e.period * np.arange(poses) / poses
+    pitch = min(o.pitch_angle * o.r_max for o in (e.a, e.b))
+    margin, slack = 0.05 * pitch, _SLACK * pitch
+    while True:
+        seen = tuple((v, v.sweep(psi, np.zeros(poses), margin, slack)) for v in views(e))
+        found = min((float(t.distance.min(initial=np.inf)) for _, t in seen), default=np.inf)
+        if found <= margin or margin > 1e3 * pitch:
+            return Sweep(psi, seen, margin, pitch)
+        margin = 2 * min(found, 8 * margin)
+
+
+def lowest_rows(t: Touching, poses: int, pitch_length: float) -> Integers:
+    """Rows no farther than their neighbours on the probe and nearly as low as the least of their pose, the lowest few."""
+    if t.pose.size == 0:
+        return np.empty(0, dtype=np.int64)
+    least = np.full(poses, np.inf)
+    np.minimum.at(least, t.pose, t.distance)
+    key = t.pose.astype(np.int64) << 40 | t.pitch.astype(np.int64) << 20 | t.sample
+    before = np.where(np.append(False, np.diff(key) == 1), np.roll(t.distance, 1), np.inf)
+    after = np.where(np.append(np.diff(key) == 1, False), np.roll(t.distance, -1), np.inf)
+    slack = _SLACK * pitch_length
+    rows = np.flatnonzero((t.distance <= before) & (t.distance <= after) & (t.distance <= least[t.pose] + slack))
+    rows = rows[np.lexsort((t.distance[rows], t.pose[rows]))]
+    pose = t.pose[rows]
+    rank = np.arange(rows.size) - np.searchsorted(pose, pose)
+    return rows[rank < _REFINED]
+
+
+def least_distance(e: Engagement, s: Sweep) -> tuple[Least, Reals]:
+    """The least distance over the pitch, and the least distance at each of the sweep's angles.
+
+    Returns:
+        The exact minimum, refined between the sampled angles; and the curve of least distances [mm], shape (m,).
+    """
+    per_pose = np.full(s.psi.size, np.inf)
+    best: list[tuple[View, Spots, Measure]] = []
+    for view, touching in s.seen:
+        rows = lowest_rows(touching, s.psi.size, s.pitch_length)
+        if rows.size:
+            spots, exact = slide(view, spots_at(view, touching, rows, s.psi, np.zeros_like(s.psi), 2))
+            np.minimum.at(per_pose, touching.pose[rows], exact.near.distance)
+            best.append((view, spots, exact))
+    step = e.period / s.psi.size
+    results = [_between_poses(e, view, spots, exact, step) for view, spots, exact in best]
+    return min(results, key=lambda r: r.distance), per_pose
+
+
+def _between_poses(e: Engagement, view: View, spots: Spots, exact: Measure, step: float) -> Least:
+    """Follow the lowest spots to the input angle where the distance is least."""
+    # A spot can fall by about its approach speed times half the step between poses.
+    floor = exact.near.distance - np.abs(exact.advancing) * step / 2
+    chosen = np.argsort(floor, kind="stable")[:_FOLLOWED]
+    spots = spots.take(chosen)
+
+    def settled(psi: Reals) -> tuple[Spots, Measure]:
+        return slide(view, replace(spots.repeated(psi.size // spots.psi.size), psi=psi.ravel()))
+
+    def advancing(psi: Reals) -> Reals:
+        return settled(psi)[1].advancing.reshape(psi.shape)
+
+    psi = settle(advancing, spots.psi - step, spots.psi + step)
+    start, end = (spots, measure(view, spots)), settled(psi)
+    found, at = min((start, end), key=lambda pair: float(pair[1].near.distance.min()))
+    return _report(e, view, found.take(np.array([int(np.argmin(at.near.distance))])))
+
+
+def _report(e: Engagement, view: View, spot: Spots) -> Least:
+    m = measure(view, spot)
+    probe = view.probe.outline.pieces[int(view.probe.piece_at(spot.place)[0])].role
+    target = view.target.outline.pieces[int(m.near.piece[0])].role
+    psi = float(spot.psi[0])
+    target_turn = view.target_angle + view.target_rate * psi
+    centre = e.centre_a if view.probe_share else e.centre_b
+    place = centre + complex(m.near.foot[0]) * complex(np.exp(1j * target_turn))
+    return Least(float(m.near.distance[0]), psi, place, (target, probe) if view.probe_share else (probe, target))

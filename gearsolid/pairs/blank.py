@@ -1,0 +1,65 @@
+"""The body before teeth: face width, bore, rim; and the body it becomes with an outline."""
+
+from dataclasses import dataclass
+
+from gearsolid.curves.loops import disc
+from gearsolid.curves.outline import Outline
+from gearsolid.errors import DesignError
+from gearsolid.pairs.part import Body
+from gearsolid.shop.bore import Bore
+
+
+@dataclass(frozen=True)
+class Blank:
+    """What a member is made from.
+
+    Args:
+        face_width: [mm] along the axis.
+        bore: shaft hole, or None.
+        rim_diameter: outside diameter of an annulus [mm]; None takes two tooth depths beyond the root circle.
+        z: height of the bottom face [mm].
+    """
+
+    face_width: float
+    bore: Bore | None = None
+    rim_diameter: float | None = None
+    z: float = 0.0
+
+
+def is_ring(outline: Outline) -> bool:
+    """Whether an outline is the toothed hole of an annulus (material outside)."""
+    return outline.area < 0
+
+
+def body_of(outline: Outline, blank: Blank) -> Body:
+    """The body of a toothed member.
+
+    Raises:
+        DesignError: the bore or keyway reaches the root circle, a ring is given a bore or a wheel a rim, or the rim
+            leaves no material behind the teeth.
+    """
+    if is_ring(outline):
+        return _ring_body(outline, blank)
+    if blank.rim_diameter is not None:
+        raise DesignError(
+            f"a rim diameter of {blank.rim_diameter:g} mm was given to a member with outside teeth; only an annulus has "
+            "a rim: leave it out"
+        )
+    if blank.bore is not None and blank.bore.reach >= outline.r_min:
+        raise DesignError(
+            f"the bore (with keyway and chamfer) reaches {blank.bore.reach:.4g} mm from the axis, but the root circle "
+            f"has a radius of {outline.r_min:.4g} mm: take a smaller bore, no key, or more teeth"
+        )
+    return Body(outline, blank.face_width, bore=blank.bore, z=blank.z)
+
+
+def _ring_body(outline: Outline, blank: Blank) -> Body:
+    if blank.bore is not None:
+        raise DesignError("a bore was given to an annulus, whose hole is toothed: leave the bore out")
+    least = 2 * outline.r_max
+    rim = blank.rim_diameter or least + 4 * (outline.r_max - outline.r_min)
+    if rim <= least:
+        raise DesignError(
+            f"the rim diameter is {rim:g} mm, but the root circle of the annulus has {least:.4f} mm: take a larger rim"
+        )
+    return Body(disc(rim / 2), blank.face_width, holes=(outline,), z=blank.z)
