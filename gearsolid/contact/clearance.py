@@ -74,7 +74,7 @@ def sweep(e: Engagement, poses: int = POSES) -> Sweep:
 
 
 def lowest_rows(t: Touching, poses: int, pitch_length: float) -> Integers:
-    """Rows no farther than their neighbours on the probe and nearly as low as the least of their pose, the lowest few."""
+    """Rows no farther than their neighbours and nearly as low as the least of their pose; the lowest few."""
     if t.pose.size == 0:
         return np.empty(0, dtype=np.int64)
     least = np.full(poses, np.inf)

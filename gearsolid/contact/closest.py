@@ -52,7 +52,7 @@ def around(view: View, spots: Spots, freedom: int) -> Spots:
 
 def spots_at(view: View, touching: Touching, rows: Integers, psi: Reals, extra: Reals, freedom: int) -> Spots:
     """The sampled rows as spots that may slide `freedom` samples either way."""
-    place, pose = touching.sample[rows] * 1.0, touching.pose[rows]
+    place, pose = touching.sample[rows].astype(np.float64), touching.pose[rows]
     return around(view, Spots(psi[pose], extra[pose], touching.pitch[rows], place, place, place), freedom)
 
 

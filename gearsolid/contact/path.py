@@ -25,7 +25,7 @@ def mean_contacts(s: Sweep, driven: Reals, way: int) -> float:
     for view, _ in s.seen:
         seen = view.sweep(s.psi, driven, s.margin, tol)
         rows = lowest_rows(seen, s.psi.size, s.pitch_length)
-        spots, exact = slide(view, spots_at(view, seen, rows, s.psi, driven, 2))
+        _, exact = slide(view, spots_at(view, seen, rows, s.psi, driven, 2))
         touching = (exact.near.distance <= tol) & (way * exact.closing < 0)
         count += len({*zip(seen.pose[rows][touching], seen.pitch[rows][touching], strict=True)})
     return count / s.psi.size
@@ -34,8 +34,8 @@ def mean_contacts(s: Sweep, driven: Reals, way: int) -> float:
 def conjugate_ratio(e: Engagement, s: Sweep, driven: Reals, way: int) -> float:
     """Mean number of flank pairs in contact [-], each end of contact found exactly.
 
-    A point of a's flank touches when its normal passes through the pitch point; it counts when b, turned until it stops,
-    has its boundary there.
+    A point of a's flank touches when its normal passes through the pitch point; it counts when b, turned until it
+    stops, has its boundary there.
     """
     finder = _Finder(e, s.psi, driven, way, TOUCH * s.pitch_length)
     return sum(finder.share(branch) for branch in (1, -1))
@@ -69,7 +69,7 @@ class _Finder:
         cloud = self._a.cloud
         total = 0.0
         for first, last in zip(np.flatnonzero(cloud.edge == -1), np.flatnonzero(cloud.edge == 1), strict=True):
-            place = np.linspace(first, last, max(_PER_SPAN, 2 * (last - first) + 1))
+            place = np.linspace(float(first), float(last), max(_PER_SPAN, 2 * int(last - first) + 1))
             inside, angle = self._touching(place, branch)
             both = inside[:-1] & inside[1:]
             total += float(np.sum(np.abs(np.diff(np.unwrap(angle)))[both]))

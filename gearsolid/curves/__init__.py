@@ -1,0 +1,1 @@
+"""Plane curves: roulettes, envelopes, parallels, fits, outlines and their distance fields. numpy and scipy only."""

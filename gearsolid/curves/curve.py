@@ -7,13 +7,9 @@ everything else (tangent, curvature, length, fit, area) follows from these.
 from abc import ABC, abstractmethod
 from dataclasses import dataclass
 from functools import cached_property
-from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
-
-if TYPE_CHECKING:
-    from collections.abc import Sequence
 
 Reals = NDArray[np.float64]
 Points = NDArray[np.complex128]
@@ -240,8 +236,3 @@ class Section(Curve):
 
     def breaks(self) -> tuple[float, ...]:
         return tuple(b for b in self.base.breaks() if self.first < b < self.last)
-
-
-def chain_gaps(curves: "Sequence[Curve]") -> Reals:
-    """Distances [mm] between the end of each curve and the start of the next, shape (len(curves) - 1,)."""
-    return np.array([abs(a.end - b.start) for a, b in zip(curves[:-1], curves[1:], strict=True)])

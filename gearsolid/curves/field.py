@@ -1,7 +1,7 @@
 """Signed distance from an outline, positive outside the material and negative inside.
 
-One pitch is sampled and joined by quintic pieces that share point and two derivatives with the exact curves; the error of
-that stand-in is measured and kept. Queries are folded into one pitch, so their cost does not depend on the order.
+One pitch is sampled and joined by quintic pieces that share point and two derivatives with the exact curves; the error
+of that stand-in is measured and kept. Queries are folded into one pitch, so their cost does not depend on the order.
 """
 
 from dataclasses import dataclass

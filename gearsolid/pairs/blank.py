@@ -42,8 +42,8 @@ def body_of(outline: Outline, blank: Blank) -> Body:
         return _ring_body(outline, blank)
     if blank.rim_diameter is not None:
         raise DesignError(
-            f"a rim diameter of {blank.rim_diameter:g} mm was given to a member with outside teeth; only an annulus has "
-            "a rim: leave it out"
+            f"a rim diameter of {blank.rim_diameter:g} mm was given to a member with outside teeth; only an annulus "
+            "has a rim: leave it out"
         )
     if blank.bore is not None and blank.bore.reach >= outline.r_min:
         raise DesignError(

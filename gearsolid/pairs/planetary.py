@@ -34,7 +34,7 @@ def speeds(sun_teeth: int, ring_teeth: int, fixed: Shaft, driver: Shaft) -> dict
     if fixed == driver:
         raise DesignError(f"the {fixed} is both held and driven: hold one of sun, ring, carrier and drive another")
     weight: dict[Shaft, int] = {"sun": sun_teeth, "ring": ring_teeth, "carrier": -(sun_teeth + ring_teeth)}
-    (output,) = {"sun", "ring", "carrier"} - {fixed, driver}
+    output = next(s for s in weight if s not in (fixed, driver))
     return {fixed: 0.0, driver: 1.0, output: -weight[driver] / weight[output]}
 
 

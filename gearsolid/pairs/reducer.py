@@ -133,8 +133,8 @@ class PinWheelReducer:
             )
         if circle - self.rollers.radius <= self.output_bore.reach:
             raise DesignError(
-                f"the output bore reaches {self.output_bore.reach:.4g} mm from the axis, into the rollers that start at "
-                f"{circle - self.rollers.radius:.4g} mm: take a smaller bore"
+                f"the output bore reaches {self.output_bore.reach:.4g} mm from the axis, into the rollers that start "
+                f"at {circle - self.rollers.radius:.4g} mm: take a smaller bore"
             )
 
     def _check_rim(self) -> None:
