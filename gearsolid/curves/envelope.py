@@ -7,6 +7,12 @@ import numpy as np
 from gearsolid.curves.curve import Curve, Points, Reals
 from gearsolid.curves.rolling import Rolling
 
+# Nearer to the pitch point than this share of the distance from the carried centre, a contact is at the pitch point.
+_AT_PITCH = 1e-6
+# Slower than this share of the usual speed the way to go is read beside, this share of the span away.
+_SLOW = 1e-6
+_ASIDE = 1e-3
+
 
 @dataclass(frozen=True)
 class Envelope(Curve):
@@ -46,7 +52,22 @@ class Envelope(Curve):
         p, tangent, velocity = self.carried.point(t), self.carried.tangent(t), self.carried.derivative(t)
         roll = self.motion.meet(p, tangent, self.branch)
         rate = self.motion.meet_rate(p, tangent, np.abs(velocity), self.carried.turning(t), self.branch)
-        return self.motion.turn(roll) * velocity + self.motion.velocity(p, roll) * rate
+        drift = self.motion.velocity(p, roll)
+        with np.errstate(invalid="ignore"):
+            # In contact at the pitch point itself nothing slides, however fast the contact moves on.
+            slide = np.where(np.abs(drift) <= _AT_PITCH * np.abs(p) * ~np.isfinite(rate), 0.0, drift * rate)
+        return self.motion.turn(roll) * velocity + slide
+
+    def tangent(self, t: Reals) -> Points:
+        """Unit direction of travel: that of the carried curve at contact, or its reverse."""
+        t = np.asarray(t, dtype=float)
+        side = self.side(t)
+        velocity, beside = self.derivative(t), side
+        slow = np.abs(velocity) <= _SLOW * self._usual_speed
+        if np.any(slow):
+            t = np.where(slow, t + _ASIDE * (self.span[1] - self.span[0]) * self._inward(t), t)
+            velocity, beside = self.derivative(t), self.side(t)
+        return side * np.where(np.real(velocity * np.conj(beside)) < 0, -1.0, 1.0)
 
     def side(self, t: Reals) -> Points:
         """Unit tangent of the carried curve at contact, turned into the fixed frame: it never flips at a cusp."""

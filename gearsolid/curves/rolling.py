@@ -19,6 +19,9 @@ from gearsolid.errors import DesignError
 # A carried point this close to the pitch curve, as a share of its radius, lies on it.
 _ON_CIRCLE = 1e-12
 
+# A normal that misses the pitch circle by no more than this share of its radius grazes it.
+_ROUNDING = 1e-14
+
 
 class Rolling(ABC):
     """The motion of a carried body whose pitch curve rolls without slip on a fixed one."""
@@ -75,15 +78,16 @@ class _CarriedCircle(Rolling):
     carried: float
 
     def meet(self, p: Points, tangent: Points, branch: int) -> Reals:
+        cosine = -_moment(p, tangent) / self.carried
         with np.errstate(invalid="ignore"):
-            lean = np.arccos(-_moment(p, tangent) / self.carried)
+            lean = np.arccos(np.where(np.abs(cosine) < 1 + _ROUNDING, np.clip(cosine, -1.0, 1.0), np.nan))
         roll = branch * lean - np.angle(tangent)
         return np.angle(np.exp(1j * roll))
 
     def meet_rate(self, p: Points, tangent: Points, speed: Reals, turning: Reals, branch: int) -> Reals:
         h = _moment(p, tangent)
         with np.errstate(invalid="ignore", divide="ignore"):
-            slope = np.sign(self.carried) / np.sqrt(self.carried**2 - h**2)
+            slope = np.sign(self.carried) / np.sqrt(np.maximum(self.carried**2 - h**2, 0.0))
             return branch * slope * _moment_rate(p, tangent, speed, turning) - turning
 
     def rests(self, p: complex, first: float, last: float) -> tuple[float, ...]:
