@@ -12,6 +12,8 @@ from gearsolid.curves.outline import smooth_spans
 from gearsolid.errors import ToleranceError
 
 _NODES, _WEIGHTS = np.polynomial.legendre.leggauss(12)
+# Share of the length that rounding may have spoilt, however fine the panels.
+_ROUNDING = 4 * float(np.finfo(float).eps)
 _PANEL_BUDGET = 4096
 _NEWTON_STEPS = 60
 
@@ -29,7 +31,7 @@ class ArcLength:
     """Length travelled along a curve, measured from the start of its span.
 
     Each smooth span is cut into panels until a panel's Gauss sum and the sum over its two halves agree. A curve may
-    stand still at the ends of its smooth spans (cusps).
+    stand still anywhere (cusps), but places where its speed jumps must be among its breaks.
 
     Args:
         curve: the curve to measure.
@@ -49,7 +51,7 @@ class ArcLength:
 
     @property
     def error(self) -> float:
-        """Estimate of the error of `total` [mm]: by how much the panels and their halves differ."""
+        """Estimate of the error of `total` [mm]: by how much the panels and their halves differ, and rounding."""
         return self._panels.error
 
     def at(self, t: Reals) -> Reals:
@@ -110,11 +112,11 @@ class ArcLength:
             middle = (edges[:-1] + edges[1:]) / 2
             pieces = self._walk(edges[:-1], middle) + self._walk(middle, edges[1:])
             errors = np.abs(pieces - self._walk(edges[:-1], edges[1:]))
-            error = float(np.sum(errors))
+            error = float(np.sum(errors) + _ROUNDING * np.sum(pieces))
             if error <= self.tol:
                 return _Panels(edges, np.concatenate(([0.0], np.cumsum(pieces))), error)
             coarse = ~(errors <= self.tol / (2 * len(errors)))
-            if len(edges) + int(np.sum(coarse)) > _PANEL_BUDGET:
+            if not np.any(coarse) or len(edges) + int(np.sum(coarse)) > _PANEL_BUDGET:
                 raise ToleranceError(
                     f"the arc length of a {type(self.curve).__name__} is known to {error:.3g} mm after {len(errors)} "
                     f"panels, not to the {self.tol:.3g} mm asked; ask for a larger tol, or declare the curve's corners "
