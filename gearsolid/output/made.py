@@ -2,7 +2,7 @@
 
 import re
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from gearsolid.pairs.part import Body, Part
 
@@ -13,7 +13,7 @@ class Made:
 
     Args:
         name: of the body; the parts' common name without their numbers.
-        body: what is made, as its first part carries it.
+        body: what is made, standing on height 0.
         parts: the parts, all of this shape.
     """
 
@@ -28,22 +28,11 @@ class Made:
 
 
 def distinct(parts: Sequence[Part]) -> tuple[Made, ...]:
-    """Group parts whose bodies have the same outlines, widths, bore and bosses, wherever and how high they stand."""
-    groups: dict[object, list[Part]] = {}
+    """Group parts that are the same piece of work, wherever and however high they stand."""
+    groups: dict[Body, list[Part]] = {}
     for part in parts:
-        groups.setdefault(_shape(part.body), []).append(part)
-    return tuple(Made(_common_name(group), group[0].body, tuple(group)) for group in groups.values())
-
-
-def _shape(body: Body) -> object:
-    """What makes two bodies the same piece of work; outlines count as equal when they are one object."""
-    return (
-        id(body.outer),
-        body.width,
-        tuple(id(h) for h in body.holes),
-        body.bore,
-        tuple((id(b.outline), b.height) for b in body.bosses),
-    )
+        groups.setdefault(replace(part.body, z=0.0), []).append(part)
+    return tuple(Made(_common_name(group), body, tuple(group)) for body, group in groups.items())
 
 
 def _common_name(group: list[Part]) -> str:

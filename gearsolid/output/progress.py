@@ -28,4 +28,5 @@ def progress() -> Iterator[Tell]:
 
 
 def _plain(done: int, total: int, what: str) -> None:
-    print(f"{done + 1 if done < total else total} of {total}: {what}", file=sys.stderr)
+    if done < total:
+        print(f"{done + 1} of {total}: {what}", file=sys.stderr, flush=True)

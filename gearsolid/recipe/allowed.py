@@ -4,7 +4,6 @@ from types import NoneType, UnionType
 from typing import Any, Literal, Union, get_args, get_origin
 
 import annotated_types as at
-from pydantic import BaseModel
 from pydantic.fields import FieldInfo
 
 from gearsolid.recipe.table import Table, unit
@@ -22,7 +21,7 @@ def members(annotation: Any) -> tuple[Any, ...]:
 def sub_table(field: FieldInfo) -> type[Table] | None:
     """The table a key opens, or None for a plain value."""
     for kind in members(field.annotation):
-        if isinstance(kind, type) and issubclass(kind, BaseModel):
+        if isinstance(kind, type) and issubclass(kind, Table):
             return kind
     return None
 

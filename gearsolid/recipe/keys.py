@@ -1,12 +1,15 @@
 """The keys a recipe may hold, written from the schema itself: for the page of recipes and for `gearsolid keys`."""
 
+import sys
 from collections.abc import Iterator
 from dataclasses import dataclass
 
 from pydantic_core import PydanticUndefined
 
+from gearsolid.errors import RecipeError
 from gearsolid.recipe.allowed import allowed, sub_table
-from gearsolid.recipe.mistakes import shown
+from gearsolid.recipe.machines import MACHINES
+from gearsolid.recipe.mistakes import nearest, shown
 from gearsolid.recipe.table import Table
 
 
@@ -49,3 +52,37 @@ def markdown(model: type[Table]) -> str:
     lines = ["| key | meaning | value | default |", "|---|---|---|---|"]
     lines += [f"| `{r.path}` | {r.meaning} | {r.allowed} | {r.default} |" for r in key_rows(model)]
     return "\n".join(lines) + "\n"
+
+
+def keys_text(machine: str | None) -> str:
+    """The keys of one kind of machine, or of all, as lines for a terminal.
+
+    Args:
+        machine: kind of machine as recipes name it; None lists every kind.
+
+    Raises:
+        RecipeError: no such kind.
+    """
+    if machine is None:
+        return "\n\n".join(keys_text(kind) for kind in MACHINES)
+    if machine not in MACHINES:
+        known = ", ".join(MACHINES)
+        raise RecipeError(f"no machine is called {shown(machine)}; known: {known}{nearest(machine, list(MACHINES))}")
+    model = MACHINES[machine]
+    found = list(key_rows(model))
+    width = max(len(r.path) for r in found)
+    lines = [f"{r.path.ljust(width)}  {r.meaning}\n{'':{width}}  {r.allowed}; {r.default}" for r in found]
+    return "\n".join([f'machine = "{machine}": {_summary(model)}', "", *lines])
+
+
+def page() -> str:
+    """The keys of every kind of machine as a Markdown section each."""
+    return "\n".join(f'### `machine = "{kind}"`\n\n{_summary(m)}\n\n{markdown(m)}' for kind, m in MACHINES.items())
+
+
+def _summary(model: type[Table]) -> str:
+    return (model.__doc__ or "").strip().splitlines()[0]
+
+
+if __name__ == "__main__":
+    sys.stdout.write(page())

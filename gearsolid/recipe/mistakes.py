@@ -43,6 +43,8 @@ def shown(value: Any) -> str:
 def _sentence(model: type[Table], error: ErrorDetails) -> str:
     path = error["loc"]
     where = ".".join(str(p) for p in path)
+    if error["type"] == "value_error":
+        return f"{where}: {error['ctx']['error']}" if where else str(error["ctx"]["error"])
     if error["type"] == "extra_forbidden":
         known = list(_table_at(model, path[:-1]).model_fields)
         hint = nearest(str(path[-1]), known) or f"; known here: {', '.join(known)}"

@@ -1,0 +1,262 @@
+"""The machines a recipe can ask for, one schema each."""
+
+from abc import abstractmethod
+from math import radians
+from typing import Literal, Self
+
+from pydantic import model_validator
+
+from gearsolid.pairs.machine import Machine
+from gearsolid.pairs.planetary import PlanetaryStage
+from gearsolid.pairs.reducer import OutputRollers, PinWheelReducer, Stack
+from gearsolid.pairs.spur_pair import SpurPair
+from gearsolid.recipe.members import Bored, CycloidalTable, InvoluteTable, RingTable
+from gearsolid.recipe.table import Table, entry, of_table
+from gearsolid.shop.bore import Bore
+from gearsolid.teeth.involute_relations import centre_distance
+from gearsolid.teeth.pinwheel import CycloidDisc, PinRing
+
+_NAME = r"^[A-Za-z][A-Za-z0-9 -]*$"
+
+
+class MachineTable(Table):
+    """The top level of a recipe."""
+
+    name: str = entry("name of the design, heads the report", min_length=1, max_length=80)
+
+    @abstractmethod
+    def build(self) -> Machine:
+        """The machine the recipe describes.
+
+        Raises:
+            DesignError: it cannot exist; the message names the table.
+        """
+
+
+class _InvoluteStage(MachineTable):
+    module: float = entry("module of all members", "mm", gt=0)
+    pressure_angle: float = entry("pressure angle of all members", "deg", 20.0, ge=5, le=40)
+    centre_distance: float | None = entry(
+        "distance of the working axes; when left out, the one at which teeth that are not thinned have no play",
+        "mm",
+        None,
+        gt=0,
+    )
+
+    def _distance(self, z1: int, z2: int, shift_sum: float) -> float:
+        if self.centre_distance is not None:
+            return self.centre_distance
+        return abs(centre_distance(z1, z2, shift_sum, radians(self.pressure_angle), module=self.module))
+
+
+class _Named(Table):
+    name: str | None = entry(
+        "what the part is called: letters, digits, spaces and hyphens; the table's name when left out",
+        default=None,
+        pattern=_NAME,
+    )
+
+
+class InvoluteMemberTable(_Named, InvoluteTable):
+    """An external involute member with a name of its own."""
+
+
+class CycloidalMemberTable(_Named, CycloidalTable):
+    """A cycloidal member with a name of its own."""
+
+
+class InvolutePair(_InvoluteStage):
+    """Two external involute members; the driver turns with the input."""
+
+    machine: Literal["involute-pair"] = entry("kind of machine")
+    driver: InvoluteMemberTable = entry("the member on the input shaft")
+    driven: InvoluteMemberTable = entry("its mate")
+
+    @model_validator(mode="after")
+    def _two_names(self) -> Self:
+        _check_names(self.driver, self.driven)
+        return self
+
+    def build(self) -> SpurPair:
+        with of_table("driver"):
+            driver, driver_blank = self.driver.member(self.module, self.pressure_angle), self.driver.blank()
+        with of_table("driven"):
+            driven, driven_blank = self.driven.member(self.module, self.pressure_angle), self.driven.blank()
+        shifts = self.driver.profile_shift + self.driven.profile_shift
+        distance = self._distance(driver.teeth, driven.teeth, shifts)
+        names = self.driver.name or "driver", self.driven.name or "driven"
+        return SpurPair(driver, driven, distance, driver_blank, driven_blank, *names)
+
+
+class RingPair(_InvoluteStage):
+    """An involute pinion that drives an annulus from inside."""
+
+    machine: Literal["ring-pair"] = entry("kind of machine")
+    pinion: InvoluteTable = entry("the member on the input shaft")
+    ring: RingTable = entry("the annulus it drives")
+
+    def build(self) -> SpurPair:
+        with of_table("pinion"):
+            pinion, pinion_blank = self.pinion.member(self.module, self.pressure_angle), self.pinion.blank()
+        with of_table("ring"):
+            ring, ring_blank = self.ring.member(self.module, self.pressure_angle), self.ring.blank()
+        shifts = self.pinion.profile_shift + self.ring.profile_shift
+        distance = self._distance(pinion.teeth, -ring.teeth, shifts)
+        return SpurPair(pinion, ring, distance, pinion_blank, ring_blank, "pinion", "ring")
+
+
+class CycloidalPair(MachineTable):
+    """A cycloidal wheel and pinion, as in clocks; the driver turns with the input."""
+
+    machine: Literal["cycloidal-pair"] = entry("kind of machine")
+    module: float = entry("module of both members", "mm", gt=0)
+    centre_distance: float | None = entry(
+        "distance of the axes (depthing); the sum of the reference radii when left out", "mm", None, gt=0
+    )
+    driver: CycloidalMemberTable = entry("the member on the input arbor")
+    driven: CycloidalMemberTable = entry("its mate")
+
+    @model_validator(mode="after")
+    def _two_names(self) -> Self:
+        _check_names(self.driver, self.driven)
+        return self
+
+    def build(self) -> SpurPair:
+        circles = self.driver.describing(self.module), self.driven.describing(self.module)
+        with of_table("driver"):
+            driver, driver_blank = self.driver.member(self.module, circles[1]), self.driver.blank()
+        with of_table("driven"):
+            driven, driven_blank = self.driven.member(self.module, circles[0]), self.driven.blank()
+        distance = self.centre_distance
+        if distance is None:
+            distance = driver.reference_radius + driven.reference_radius
+        names = self.driver.name or "driver", self.driven.name or "driven"
+        return SpurPair(driver, driven, distance, driver_blank, driven_blank, *names)
+
+
+class Planetary(_InvoluteStage):
+    """Sun, planets and ring, any of sun, ring and carrier held."""
+
+    machine: Literal["planetary"] = entry("kind of machine")
+    planets: int = entry("number of planets", default=3, ge=1)
+    fixed: Literal["sun", "ring", "carrier"] = entry("the shaft held", default="ring")
+    driver: Literal["sun", "ring", "carrier"] = entry("the shaft that turns with the input", default="sun")
+    sun: InvoluteTable = entry("the sun")
+    planet: InvoluteTable = entry("every planet")
+    ring: RingTable = entry("the ring")
+
+    def build(self) -> PlanetaryStage:
+        with of_table("sun"):
+            sun, sun_blank = self.sun.member(self.module, self.pressure_angle), self.sun.blank()
+        with of_table("planet"):
+            planet, planet_blank = self.planet.member(self.module, self.pressure_angle), self.planet.blank()
+        with of_table("ring"):
+            ring, ring_blank = self.ring.member(self.module, self.pressure_angle), self.ring.blank()
+        shifts = self.sun.profile_shift + self.planet.profile_shift
+        return PlanetaryStage(
+            sun,
+            planet,
+            ring,
+            self.planets,
+            self._distance(sun.teeth, planet.teeth, shifts),
+            sun_blank,
+            planet_blank,
+            ring_blank,
+            self.fixed,
+            self.driver,
+        )
+
+
+class PinRingTable(Table):
+    """The ring pins in their housing."""
+
+    pins: int = entry("number of pins; one more than each disc has lobes", ge=3)
+    pin_circle_radius: float = entry("radius of the circle on which the pins stand", "mm", gt=0)
+    pin_radius: float = entry("radius of a pin", "mm", gt=0)
+    housing_radius: float = entry("radius of the housing bore between the pins; the lobes must clear it", "mm", gt=0)
+    rim_diameter: float = entry("outside diameter of the housing", "mm", gt=0)
+
+    def member(self) -> PinRing:
+        """The ring."""
+        return PinRing(self.pins, self.pin_circle_radius, self.pin_radius, self.housing_radius)
+
+
+class DiscTable(Table):
+    """The cycloid discs."""
+
+    count: int = entry("number of discs, their cranks spread evenly", default=2, ge=1)
+    width: float = entry("width of a disc along the axis", "mm", gt=0)
+    bore: float = entry("diameter of the hole for the eccentric or its bearing", "mm", gt=0)
+    chamfer: float = entry("45 degree chamfer at both mouths of the bore", "mm", 0.0, ge=0)
+    equidistant: float = entry(
+        "how far the profile lies inside the exact one everywhere: play, as by a pin radius taken larger", "mm", 0.0
+    )
+    moved_distance: float = entry(
+        "how much larger the pin circle is taken when the profile is generated; negative gives play", "mm", 0.0
+    )
+
+
+class RollerTable(Table):
+    """The output rollers, which reach through holes of the discs."""
+
+    count: int = entry("number of rollers", ge=2)
+    circle_radius: float = entry("radius of the circle on which they stand", "mm", gt=0)
+    radius: float = entry("radius of a roller", "mm", gt=0)
+    hole_clearance: float = entry("play of a roller in its hole, on the diameter", "mm", 0.0, ge=0)
+
+
+class FlangeTable(Bored):
+    """The output flange."""
+
+    flange_width: float = entry("width of the flange along the axis", "mm", gt=0)
+    bore: float = entry("diameter of the output shaft hole", "mm", gt=0)
+
+
+class PinWheel(MachineTable):
+    """Cycloid discs on an eccentric input shaft, rolling in ring pins; rollers carry the output."""
+
+    machine: Literal["pin-wheel"] = entry("kind of machine")
+    eccentricity: float = entry("throw of the input cranks", "mm", gt=0)
+    gap: float = entry("axial gap between flange, discs and ends", "mm", gt=0)
+    ring: PinRingTable = entry("the ring pins and their housing")
+    disc: DiscTable = entry("the cycloid discs")
+    rollers: RollerTable = entry("the output rollers")
+    output: FlangeTable = entry("the output flange")
+
+    def build(self) -> PinWheelReducer:
+        with of_table("ring"):
+            ring = self.ring.member()
+        with of_table("disc"):
+            disc = CycloidDisc(
+                self.ring.pins - 1,
+                self.eccentricity,
+                self.ring.pin_circle_radius,
+                self.ring.pin_radius,
+                self.disc.equidistant,
+                self.disc.moved_distance,
+            )
+            disc_bore = Bore(self.disc.bore, chamfer=self.disc.chamfer)
+        with of_table("rollers"):
+            t = self.rollers
+            rollers = OutputRollers(t.count, t.circle_radius, t.radius, t.hole_clearance)
+        with of_table("output"):
+            output_bore = self.output.shaft_hole() or Bore(self.output.bore)
+        stack = Stack(self.disc.width, self.gap, self.output.flange_width)
+        return PinWheelReducer(
+            disc, ring, rollers, stack, disc_bore, output_bore, self.ring.rim_diameter, self.disc.count
+        )
+
+
+MACHINES: dict[str, type[MachineTable]] = {
+    "involute-pair": InvolutePair,
+    "ring-pair": RingPair,
+    "cycloidal-pair": CycloidalPair,
+    "planetary": Planetary,
+    "pin-wheel": PinWheel,
+}
+
+
+def _check_names(driver: _Named, driven: _Named) -> None:
+    first, second = driver.name or "driver", driven.name or "driven"
+    if first == second:
+        raise ValueError(f'driver and driven are both called "{first}"; give one another name')
