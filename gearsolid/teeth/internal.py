@@ -21,7 +21,8 @@ class InternalGear(InvoluteMember):
 
     `profile_shift` has the sign of ISO 21771: positive moves the profile towards the axis and makes the ring's tooth
     thicker. (Where a ring's shift is counted positive away from the axis, enter the negative of that number.)
-    `rack.dedendum` is the cutter's addendum; `rack.root_radius` plays no part, the cutter's tip rounding does.
+    Without a `cutter` the root lies where `rack.dedendum` puts it; a named cutter cuts as deep as it reaches.
+    `rack.root_radius` plays no part: the fillet comes from the rounding of the cutter's tip.
 
     Args:
         cutter: pinion-shaped cutter; None takes the largest that forms the whole flank, fed radially if possible.

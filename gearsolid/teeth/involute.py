@@ -110,6 +110,11 @@ class InvoluteGear(InvoluteMember):
         return self.rack.straight_dedendum(self.pressure_angle_deg) - self._depth_limit / self.module
 
     @property
+    def least_teeth(self) -> float:
+        """Tooth count [-], not whole, from which this rack at this shift undercuts nothing. ISO 21771."""
+        return self.teeth * self._flank_depth / self._depth_limit
+
+    @property
     def _half_root_land(self) -> float:
         """Half the flat of the transverse rack's tool tip [mm]."""
         land = max(0.0, self.rack.half_tip_land(self.pressure_angle_deg))

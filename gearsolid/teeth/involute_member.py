@@ -103,6 +103,18 @@ class InvoluteMember:
         full = self.module * self._stretch * (np.pi / 2 + 2 * self.profile_shift * tangent)
         return float(full) - self.tooth_thinning
 
+    @property
+    def generating_shift(self) -> float:
+        """Profile shift xE [-] at which a rack of standard thickness would leave this tooth, thinning included."""
+        normal = self.tooth_thinning / self._stretch
+        return self.profile_shift - normal / (2 * self.module * float(np.tan(np.radians(self.pressure_angle_deg))))
+
+    @property
+    def base_helix_cosine(self) -> float:
+        """Cosine of the helix angle at the base circle [-]."""
+        sine = np.sin(np.radians(self.helix_angle_deg)) * np.cos(np.radians(self.pressure_angle_deg))
+        return float(np.sqrt(1 - sine**2))
+
     def half_angle_at(self, radius: float) -> float:
         """Half the angle a tooth's involutes enclose at `radius` [mm], in [rad]; negative past the point of the tooth.
 

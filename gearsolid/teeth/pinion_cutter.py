@@ -1,6 +1,6 @@
 """The pinion-shaped cutter that generates a ring gear: which one, and the flank and fillet it leaves."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
@@ -22,23 +22,29 @@ _ROUNDINGS = (0.2, 0.1, 0.05)
 
 @dataclass(frozen=True)
 class PinionCutter:
-    """A pinion-shaped cutter; module, angles and addendum (the rack's dedendum) are those of the ring it cuts.
+    """A pinion-shaped cutter; its module and angles are those of the ring it cuts.
 
     Args:
         teeth: tooth count [-].
         profile_shift: coefficient x0 [-].
         tip_rounding: radius of the corner at its tip [modules]; about 0.2 is common practice.
+        addendum: haP0* of the cutter's own rack [modules].
+
+    Raises:
+        DesignError: a number is outside its limits.
     """
 
     teeth: int
     profile_shift: float = 0.0
     tip_rounding: float = 0.2
+    addendum: float = 1.25
 
     def __post_init__(self) -> None:
         if self.teeth != int(self.teeth) or self.teeth < 3:
             raise DesignError(f"the cutter has {self.teeth:g} teeth; it must have a whole number, 3 or more")
-        if not self.tip_rounding > 0:
-            raise DesignError(f"the cutter's tip rounding is {self.tip_rounding:g} modules; it must be above 0")
+        for name, value in (("tip rounding", self.tip_rounding), ("addendum", self.addendum)):
+            if not 0 < value < 10:
+                raise DesignError(f"the cutter's {name} is {value:g} modules; it must lie between 0 and 10")
 
 
 @dataclass(frozen=True)
@@ -72,7 +78,7 @@ class Generation:
             ring.pressure_angle_deg,
             cutter.profile_shift,
             ring.helix_angle_deg,
-            BasicRack(ring.rack.dedendum, ring.rack.dedendum),
+            BasicRack(cutter.addendum, cutter.addendum),
             -ring.tooth_thinning,
         )
 
@@ -191,8 +197,16 @@ def _enough_shift(ring: InvoluteMember, teeth: int) -> float:
     return max(0.0, float(least))
 
 
+def _cutter_to_depth(ring: InvoluteMember, cutter: PinionCutter) -> PinionCutter:
+    """The cutter with the addendum that cuts the ring to the root of its basic rack."""
+    root = ring.reference_radius + ring.module * (ring.rack.dedendum - ring.profile_shift)
+    generation = Generation(ring, cutter)
+    height = root - generation.distance - generation.pinion.reference_radius
+    return replace(cutter, addendum=height / ring.module - cutter.profile_shift)
+
+
 def largest_cutter(ring: InvoluteMember) -> PinionCutter:
-    """The cutter with most teeth that forms the whole flank and can be fed radially out of the ring.
+    """The cutter with most teeth that forms the whole flank to full depth and can be fed radially out of the ring.
 
     Small rings allow no such cutter; they get the one with most teeth that works along the axis. Steep flanks leave no
     room for the usual rounding at the cutter's tip; they get a smaller one.
@@ -200,11 +214,11 @@ def largest_cutter(ring: InvoluteMember) -> PinionCutter:
     Raises:
         DesignError: no cutter forms the flank.
     """
-    for rounding in _ROUNDINGS:
-        axial: PinionCutter | None = None
-        for teeth in range(ring.teeth - 2, 2, -1):
-            cutter = PinionCutter(teeth, _enough_shift(ring, teeth), rounding)
+    axial: PinionCutter | None = None
+    for teeth in range(ring.teeth - 2, 2, -1):
+        for rounding in _ROUNDINGS:
             try:
+                cutter = _cutter_to_depth(ring, PinionCutter(teeth, _enough_shift(ring, teeth), rounding))
                 generation = Generation(ring, cutter)
                 generation.check()
             except DesignError:
@@ -212,8 +226,9 @@ def largest_cutter(ring: InvoluteMember) -> PinionCutter:
             if generation.margins.trimming >= 0:
                 return cutter
             axial = axial or cutter
-        if axial:
-            return axial
+            break
+    if axial:
+        return axial
     raise DesignError(
         f"no pinion-shaped cutter forms a ring with {ring.teeth} teeth, tip radius {ring.tip_radius:.5g} mm, over "
         f"base radius {ring.base_radius:.5g} mm: shorten the tip, lower profile shift, dedendum "

@@ -74,7 +74,7 @@ def swept(ring, thickening=0.0, count=1201):
         module=ring.module,
         angle_deg=ring.pressure_angle_deg,
         shift=tool.profile_shift,
-        addendum=ring.rack.dedendum,
+        addendum=tool.addendum,
         rounding=tool.tip_rounding,
         thickening=ring.tooth_thinning + thickening,
     )
@@ -138,6 +138,12 @@ def test_usual_ring_leaves_its_planet_free_of_the_fillet(teeth, planet):
     assert used <= ring.form_radius
 
 
+@pytest.mark.parametrize("shift", [-0.5, -0.2, 0.0, 0.3])
+def test_usual_cutter_reaches_the_root_of_the_basic_rack(shift):
+    ring = InternalGear(60, 2, profile_shift=shift)
+    assert ring.root_radius == pytest.approx(60 + 2 * (1.25 - shift), rel=1e-12)
+
+
 def test_usual_cutter_is_the_largest_that_feeds_radially():
     ring = InternalGear(80, 1)
     assert ring.margins.trimming >= 0
@@ -175,6 +181,8 @@ def test_cutters_that_make_no_sense_are_refused():
         PinionCutter(2)
     with pytest.raises(DesignError, match="rounding is 0"):
         PinionCutter(20, 0.0, 0.0)
+    with pytest.raises(DesignError, match="addendum is -1"):
+        PinionCutter(20, addendum=-1)
 
 
 def test_trochoid_margin_is_infinite_where_tip_circles_do_not_cross():
