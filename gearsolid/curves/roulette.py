@@ -32,7 +32,8 @@ class Trace(Curve):
         return self.first, self.last
 
     def breaks(self) -> tuple[float, ...]:
-        return self.motion.rests(self.tracer, self.first, self.last)
+        rests = self.motion.rests(self.tracer, self.first, self.last)
+        return tuple(r for r in rests if self.first < r < self.last)
 
     def point(self, t: Reals) -> Points:
         return self.motion.place(np.asarray(self.tracer), np.asarray(t, dtype=float))
