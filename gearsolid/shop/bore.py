@@ -76,14 +76,18 @@ class Bore:
     @cached_property
     def outline(self) -> Outline:
         """Section of the hole between the chamfers, clockwise: material outside."""
-        return self._section(self.radius)
+        return self.section(self.radius)
 
     @cached_property
     def mouth(self) -> Outline:
         """Boundary of the hole in the end faces, clockwise."""
-        return self._section(self.radius + self.chamfer)
+        return self.section(self.radius + self.chamfer)
 
-    def _section(self, radius: float) -> Outline:
+    def section(self, radius: float) -> Outline:
+        """Boundary of the hole at a level where its round part has `radius` [mm], clockwise.
+
+        Plain: one full turn from the +x axis. Keyed: the arc, then the three sides of the keyway, floor second.
+        """
         if self.key is None:
             return hole(radius)
         side = self.key.width / 2
