@@ -110,11 +110,11 @@ class ArcLength:
         edges = np.array([t for t, _ in smooth_spans(self.curve)] + [self.curve.span[1]], dtype=float)
         while True:
             middle = (edges[:-1] + edges[1:]) / 2
-            pieces = self._walk(edges[:-1], middle) + self._walk(middle, edges[1:])
-            errors = np.abs(pieces - self._walk(edges[:-1], edges[1:]))
-            error = float(np.sum(errors) + _ROUNDING * np.sum(pieces))
+            halves = np.stack((self._walk(edges[:-1], middle), self._walk(middle, edges[1:])), axis=-1)
+            errors = np.abs(np.sum(halves, axis=-1) - self._walk(edges[:-1], edges[1:]))
+            error = float(np.sum(errors) + _ROUNDING * np.sum(halves))
             if error <= self.tol:
-                return _Panels(edges, np.concatenate(([0.0], np.cumsum(pieces))), error)
+                return _Panels(np.sort(np.append(edges, middle)), np.append(0.0, np.cumsum(halves)), error)
             coarse = ~(errors <= self.tol / (2 * len(errors)))
             if not np.any(coarse) or len(edges) + int(np.sum(coarse)) > _PANEL_BUDGET:
                 raise ToleranceError(
@@ -122,4 +122,4 @@ class ArcLength:
                     f"panels, not to the {self.tol:.3g} mm asked; ask for a larger tol, or declare the curve's corners "
                     "in breaks()"
                 )
-            edges = np.sort(np.concatenate((edges, middle[coarse])))
+            edges = np.sort(np.append(edges, middle[coarse]))
