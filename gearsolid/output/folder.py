@@ -25,7 +25,7 @@ WHOLE = "assembly.step"
 
 # Distance of solids from the exact outlines [mm]: far below what any workshop measures.
 _TOL = 1e-4
-# Distance of STL facets from the solid [mm]: below what printers resolve.
+# Distance of STL facets from the exact outlines [mm]: below what printers resolve.
 _FACET_TOL = 0.01
 
 
@@ -63,7 +63,7 @@ def make_folder(
         result = roll_test(machine)
         now(1)
         whole = assembly(machine.parts, name=_ascii(name), tol=_TOL)
-        solids = {child.name: child.obj for child in whole.children}
+        solids = {child.name: child.shapes[0] for child in whole.children}
         now(2)
         write_step(folder / WHOLE, whole)
         contents = {WHOLE: "the machine, its parts placed at input angle 0"}
@@ -94,7 +94,7 @@ def _check_names(made: Sequence[Made]) -> None:
 
 def _write_part(folder: Path, made: Made, solid: cq.Shape) -> PartRecord:
     step = write_step(folder / f"{made.file_name}.step", cq.Assembly(solid, name=made.name))
-    stl = write_stl(folder / f"{made.file_name}.stl", solid, _FACET_TOL)
+    stl = write_stl(folder / f"{made.file_name}.stl", made.body, _FACET_TOL)
     (back,) = read_step(step.path)
     return PartRecord(
         name=made.name,
@@ -106,7 +106,7 @@ def _write_part(folder: Path, made: Made, solid: cq.Shape) -> PartRecord:
         valid=back.shape.isValid(),
         flank_deviation=flank_deviation(back.shape, made.body),
         triangles=stl.triangles,
-        closed=stl.closed,
+        facet_volume=stl.volume,
         files=(step.path.name, stl.path.name),
     )
 

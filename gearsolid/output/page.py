@@ -7,13 +7,18 @@ from importlib.resources import files
 from math import degrees
 from string import Template
 
+import numpy as np
+
 from gearsolid.contact.result import Contact, RollResult, Verdict
 from gearsolid.output.made import Made
 from gearsolid.output.plot import line_plot
 from gearsolid.output.report import FileRecord, PartRecord, Report, tightest_first
 from gearsolid.output.views import close_view, machine_view, part_view, shapes, windows
-from gearsolid.output.wording import VERDICTS, finding, number
+from gearsolid.output.wording import VERDICTS, finding, number, ratio_text
 from gearsolid.pairs.machine import Machine
+
+# Pieces named one by one up to this number.
+_MOST_NAMES = 4
 
 
 def page(report: Report, machine: Machine, result: RollResult, made: Sequence[Made]) -> str:
@@ -29,7 +34,8 @@ def page(report: Report, machine: Machine, result: RollResult, made: Sequence[Ma
         HTML text that refers to nothing outside itself, except the files beside it.
     """
     worst = result.worst
-    pitch_window, gap_window = windows(machine, worst)
+    (engagement,) = [e for e in machine.engagements if (e.name_a, e.name_b) == (worst.name_a, worst.name_b)]
+    pitch_window, gap_window = windows(engagement, worst)
     return Template(_resource("page.html")).substitute(
         name=escape(report.name),
         title=escape(report.title),
@@ -41,11 +47,11 @@ def page(report: Report, machine: Machine, result: RollResult, made: Sequence[Ma
         shapes=shapes(made),
         machine_view=machine_view(machine, made, worst),
         ring_sentence=_ring_sentence(worst),
-        close_pitch=close_view(machine, made, worst, pitch_window),
-        close_gap=close_view(machine, made, worst, gap_window),
+        close_pitch=close_view(engagement, worst, pitch_window),
+        close_gap=close_view(engagement, worst, gap_window),
         close_caption=f"{escape(worst.name_a)} with {escape(worst.name_b)} at input angle {worst.input_angle:.3f}°",
         contact_rows="\n".join(_contact_row(c) for c in tightest_first(result)),
-        plots="\n".join(_plots(c) for c in tightest_first(result)),
+        plots="\n".join(_plots(*group) for group in _alike(tightest_first(result))),
         parts="\n".join(_part(m, r, k) for k, (m, r) in enumerate(zip(made, report.parts, strict=True))),
         recipe="\n".join(_recipe(report.recipe)),
         files="\n".join(_file(f) for f in report.files),
@@ -68,7 +74,7 @@ def _figures(report: Report, machine: Machine) -> str:
     plays = [c.play for c in report.contacts if c.play is not None]
     ratios = [c.contact_ratio for c in report.contacts if c.contact_ratio is not None]
     rows = [
-        ("Ratio, input to output", f"{report.ratio:.6g}", ": 1"),
+        ("Ratio, input to output", ratio_text(report.ratio), ""),
         ("Working centre distance", f"{report.centre_distance:.4f}", "mm"),
         ("Least clearance", f"{report.contacts[0].clearance:.4f}", "mm"),
     ]
@@ -76,13 +82,13 @@ def _figures(report: Report, machine: Machine) -> str:
         rows.append(("Least play at a pitch circle", f"{min(plays):.4f}", "mm"))
     if ratios:
         rows.append(("Least contact ratio", f"{min(ratios):.3f}", ""))
-    rows.append(("Parts, of which distinct", f"{len(machine.parts)}", f"of {len(report.parts)} shapes"))
+    rows.append(("Parts", f"{len(machine.parts)}", f"of {len(report.parts)} shapes"))
     return "\n".join(f"<div><dt>{a}</dt><dd>{b} <span>{c}</span></dd></div>" for a, b, c in rows)
 
 
 def _contact_row(c: Contact) -> str:
     return (
-        f"<tr><td>{escape(c.name_a)} with {escape(c.name_b)}</td>"
+        f"<tr><td>{escape(_pair(c))}</td>"
         f'<td class="v-{c.verdict.value}">{c.verdict.value}</td>'
         f'<td class="n">{c.clearance:.4f}</td><td class="n">{number(c.play, 4)}</td>'
         f'<td class="n">{number(c.play_angle, 4)}</td><td class="n">{number(c.contact_ratio, 3)}</td>'
@@ -91,11 +97,24 @@ def _contact_row(c: Contact) -> str:
     )
 
 
-def _plots(c: Contact) -> str:
+def _alike(contacts: Iterable[Contact]) -> list[list[Contact]]:
+    """Contacts whose curves are the same but for the input angle they start at, as of equal planets."""
+    groups: dict[bytes, list[Contact]] = {}
+    for c in contacts:
+        groups.setdefault(np.round(c.clearances, 9).tobytes(), []).append(c)
+    return list(groups.values())
+
+
+def _pair(c: Contact) -> str:
+    return f"{c.name_a} with {c.name_b}"
+
+
+def _plots(c: Contact, *others: Contact) -> str:
     plots = line_plot(c.angles, c.clearances, "Clearance", "mm", kind="clearance")
     if c.plays is not None:
         plots += line_plot(c.angles, c.plays, "Play", "degrees", kind="play")
-    return f'<div><h3>{escape(c.name_a)} with {escape(c.name_b)}</h3><div class="pair">{plots}</div></div>'
+    alike = f"<p>The same: {escape(', '.join(map(_pair, others)))}</p>" if others else ""
+    return f'<div><h3>{escape(_pair(c))}</h3>{alike}<div class="pair">{plots}</div></div>'
 
 
 def _facts(rows: Iterable[tuple[str, str]]) -> str:
@@ -105,20 +124,25 @@ def _facts(rows: Iterable[tuple[str, str]]) -> str:
 def _part(made: Made, record: PartRecord, index: int) -> str:
     count = len(record.placed_as)
     rows = [
-        ("Pieces", f"{count}" if count == 1 else f"{count}: {escape(', '.join(record.placed_as))}"),
+        ("Pieces", f"{count}" if count == 1 else f"{count}: {escape(_places(record.placed_as))}"),
         ("Face width", f"{record.width:g} mm"),
         ("Largest diameter", f"{record.diameter:.4f} mm"),
         ("Volume of the solid", f"{record.volume:.3f} mm³"),
         ("Volume by area and width", f"{record.exact_volume:.3f} mm³"),
         ("Flanks deviate at most", f"{record.flank_deviation:.2e} mm"),
         ("Read back from STEP", "one valid solid" if record.valid else "not a valid solid"),
-        ("Read back from STL", f"{record.triangles} triangles, {'closed' if record.closed else 'not closed'}"),
+        ("Read back from STL", f"{record.triangles} triangles, watertight"),
+        ("Volume of the triangles", f"{record.facet_volume:.3f} mm³"),
         ("Files", "<br>".join(f'<a href="{escape(f)}">{escape(f)}</a>' for f in record.files)),
     ]
     return (
         f"<article>{part_view(made, index)}<div><h3>{escape(made.name[0].upper() + made.name[1:])}</h3>"
         f"{_facts(rows)}</div></article>"
     )
+
+
+def _places(names: Sequence[str]) -> str:
+    return ", ".join(names) if len(names) <= _MOST_NAMES else f"{names[0]} to {names[-1]}"
 
 
 def _recipe(tables: dict[str, dict[str, str]]) -> list[str]:

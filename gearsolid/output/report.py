@@ -1,6 +1,6 @@
 """What `report.json` says: the verdict, each contact, each part, each file, in a schema that pydantic checks."""
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from typing import Literal
 
 import numpy as np
@@ -71,7 +71,7 @@ class PartRecord(_Record):
     valid: bool = Field(description="the STEP file read back as one valid solid")
     flank_deviation: float = Field(description="largest distance between solid and exact outline [mm]")
     triangles: int = Field(description="triangles of the STL file [-]")
-    closed: bool = Field(description="the STL file read back as a closed surface")
+    facet_volume: float = Field(description="volume of the watertight surface read back from STL [mm3]")
     files: tuple[str, ...] = Field(description="its files")
 
 
@@ -128,7 +128,7 @@ def make_report(
     machine: Machine,
     result: RollResult,
     parts: Sequence[PartRecord],
-    recipe: dict[str, dict[str, str]],
+    recipe: Mapping[str, Mapping[str, str]],
     files: Sequence[FileRecord],
 ) -> Report:
     """The report on a machine.
@@ -156,7 +156,7 @@ def make_report(
         tolerance=result.tolerance,
         contacts=tuple(contact_record(c) for c in tightest_first(result)),
         parts=tuple(parts),
-        recipe=recipe,
+        recipe={table: dict(rows) for table, rows in recipe.items()},
         files=tuple(files),
     )
 

@@ -4,7 +4,7 @@ from textwrap import fill
 
 from gearsolid.contact.result import Contact, RollResult, Verdict
 from gearsolid.output.report import tightest_first
-from gearsolid.output.wording import VERDICTS, finding, number
+from gearsolid.output.wording import VERDICTS, finding, number, ratio_text
 from gearsolid.pairs.machine import Machine
 
 _HEADS = (
@@ -36,7 +36,7 @@ def roll_text(name: str, machine: Machine, result: RollResult) -> str:
             "",
             fill(f"{VERDICTS[result.verdict]}. {said}", 100),
             "",
-            f"ratio            {machine.ratio:.6g} input turns per output turn",
+            f"ratio            {ratio_text(machine.ratio)}, input to output",
             f"centre distance  {machine.centre_distance:.4f} mm",
             "",
             *_table([*_HEADS, *(_row(c) for c in tightest_first(result))]),

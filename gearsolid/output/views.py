@@ -7,10 +7,12 @@ from math import degrees, radians
 import numpy as np
 
 from gearsolid.contact.result import Contact
+from gearsolid.curves.loops import disc
 from gearsolid.curves.outline import Outline
 from gearsolid.output.cut import material
 from gearsolid.output.made import Made
 from gearsolid.output.picture import path
+from gearsolid.pairs.engagement import Engagement
 from gearsolid.pairs.machine import Machine
 from gearsolid.pairs.part import Body, Part
 
@@ -36,7 +38,7 @@ def machine_view(machine: Machine, made: Sequence[Made], contact: Contact) -> st
     psi = radians(contact.input_angle)
     groups = [
         f'<g class="part" data-part="{k}" style="{_tint(part)}" transform="{_pose(part, psi)}">'
-        f'<use href="#shape-{shape}"/>{_mark(part.body)}{_pitch_circles(machine, part)}</g>'
+        f'<use href="#shape-{shape}"/>{_mark(part)}{_pitch_circles(machine, part)}</g>'
         for k, part, shape in _from_below(machine, made)
     ]
     ring = f'<circle class="place" cx="{contact.place.real:.4f}" cy="{contact.place.imag:.4f}" r="{0.03 * reach:.4f}"/>'
@@ -46,20 +48,22 @@ def machine_view(machine: Machine, made: Sequence[Made], contact: Contact) -> st
     )
 
 
-def close_view(machine: Machine, made: Sequence[Made], contact: Contact, half: float) -> str:
-    """The machine near a contact's tightest place, standing at that input angle, with a scale bar.
+def close_view(engagement: Engagement, contact: Contact, half: float) -> str:
+    """The two outlines of a contact near its tightest place, standing at that input angle, with a scale bar.
 
     Args:
-        machine: the machine.
-        made: its distinct parts, as given to `shapes`.
-        contact: the contact to look at.
+        engagement: the outlines and how they turn.
+        contact: what the roll test found on them.
         half: half the width of the window [mm].
     """
     x, y = contact.place.real, -contact.place.imag
     psi = radians(contact.input_angle)
-    uses = "".join(
-        f'<g class="part" style="{_tint(part)}" transform="{_pose(part, psi)}"><use href="#shape-{shape}"/></g>'
-        for _, part, shape in _from_below(machine, made)
+    e = engagement
+    sides = ((e.a, e.centre_a, e.angle_a, e.rate_a, "first"), (e.b, e.centre_b, e.angle_b, e.rate_b, "second"))
+    both = "".join(
+        f'<path class="face {css}" d="{_filled(outline)}" '
+        f'transform="{_turned(centre * np.exp(1j * e.frame_rate * psi), angle + (rate + e.frame_rate) * psi)}"/>'
+        for outline, centre, angle, rate, css in sides
     )
     unit = half / 100
     bar = _round_down(0.6 * half)
@@ -67,18 +71,16 @@ def close_view(machine: Machine, made: Sequence[Made], contact: Contact, half: f
     return (
         f'<svg class="close" viewBox="{x - half:.5f} {y - half:.5f} {2 * half:.5f} {2 * half:.5f}" role="img" '
         f'aria-label="{escape(contact.name_a)} with {escape(contact.name_b)} at the tightest place, window '
-        f'{2 * half:.3g} mm wide"><g transform="scale(1 -1)">{uses}</g>'
+        f'{2 * half:.3g} mm wide"><g transform="scale(1 -1)">{both}</g>'
         f'<circle class="place" cx="{x:.5f}" cy="{y:.5f}" r="{9 * unit:.5f}"/>'
         f'<path class="bar" d="M{bx:.5f} {by:.5f}h{bar:.5f}"/>'
         f'<text class="bar-text" x="{bx:.5f}" y="{up:.5f}" font-size="{9 * unit:.5f}">{bar:g} mm</text></svg>'
     )
 
 
-def windows(machine: Machine, contact: Contact) -> Band:
+def windows(engagement: Engagement, contact: Contact) -> Band:
     """Half widths [mm] of the two close views: about a pitch, and close enough to see the gap."""
-    pair = (contact.name_a, contact.name_b)
-    outlines = [o for e in machine.engagements if (e.name_a, e.name_b) == pair for o in (e.a, e.b)]
-    pitch = min(2 * np.pi * o.r_max / o.order for o in outlines)
+    pitch = min(2 * np.pi * o.r_max / o.order for o in (engagement.a, engagement.b))
     return 0.9 * pitch, float(np.clip(8 * abs(contact.clearance), pitch / 60, pitch / 6))
 
 
@@ -126,8 +128,16 @@ def _boundaries(body: Body) -> list[Outline]:
     return [body.outer, *body.holes, *([body.bore.outline] if body.bore else [])]
 
 
-def _mark(body: Body) -> str:
-    """A dot in the widest stretch of material along the part's own x axis: it shows how far the part has turned."""
+def _filled(outline: Outline) -> str:
+    """Path of an outline with its material filled: that of a hole lies between it and a circle outside."""
+    return path(outline) if outline.area > 0 else path(disc(1.1 * outline.r_max)) + path(outline)
+
+
+def _mark(part: Part) -> str:
+    """A dot in the widest stretch of material along a turning part's own x axis: it shows how far it has turned."""
+    if not part.motion.rate:
+        return ""
+    body = part.body
     inner, outer = max(material(_boundaries(body), 0.0), key=lambda s: s[1] - s[0])
     size = min(0.12 * (outer - inner), 0.03 * body.outer.r_max)
     return f'<circle class="mark" cx="{(inner + outer) / 2:.4f}" cy="0" r="{size:.4f}"/>'
@@ -151,8 +161,11 @@ def _from_below(machine: Machine, made: Sequence[Made]) -> list[tuple[int, Part,
 
 
 def _pose(part: Part, psi: float) -> str:
-    centre = part.motion.centre(psi)
-    return f"translate({centre.real:.6f} {centre.imag:.6f}) rotate({degrees(part.motion.turn(psi)):.5f})"
+    return _turned(part.motion.centre(psi), part.motion.turn(psi))
+
+
+def _turned(centre: complex, angle: float) -> str:
+    return f"translate({centre.real:.6f} {centre.imag:.6f}) rotate({degrees(angle):.5f})"
 
 
 def _extent(machine: Machine) -> tuple[float, float, float, float]:

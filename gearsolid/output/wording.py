@@ -21,3 +21,8 @@ def number(value: float | None, digits: int) -> str:
     """A figure with so many decimals, or nothing where it has no meaning."""
     # Adding zero turns a rounded -0.0 into 0.0.
     return "" if value is None else f"{round(value, digits) + 0.0:.{digits}f}"
+
+
+def ratio_text(ratio: float) -> str:
+    """A ratio of input turns to output turns, as in 29 : 1 or 1 : 7.5; negative when they turn opposite ways."""
+    return f"{ratio:.6g} : 1" if abs(ratio) >= 1 else f"{'-' if ratio < 0 else ''}1 : {1 / abs(ratio):.6g}"
