@@ -56,7 +56,7 @@ class Outline:
             )
         ends = [p.curve.end for p in self.pieces]
         starts = [p.curve.start for p in self.pieces]
-        size = max(map(abs, starts + ends))
+        size = float(np.max(np.abs(starts + ends)))
         if not np.isfinite(size):
             raise DesignError("an outline piece has no finite end point: its flank was asked beyond its reach")
         for k, (a, b) in enumerate(zip(ends[:-1], starts[1:], strict=True)):
@@ -67,6 +67,11 @@ class Outline:
                 )
         if min(abs(ends[-1] - starts[0] * f) for f in self._steps) > _JOIN * size:
             raise DesignError("the last outline piece neither closes the pitch nor reaches the next one")
+        if self.order > 1 and not self.is_chain and self._surrounds_origin:
+            raise DesignError(
+                f"an outline closed round the origin cannot be repeated {self.order} times; give one pitch of it, or "
+                "order 1"
+            )
 
     @property
     def _steps(self) -> tuple[complex, complex, complex]:

@@ -4,9 +4,9 @@ from math import pi
 
 import numpy as np
 import pytest
+from curve_specimens import SPECIMENS, epicycloid, hypocycloid, parabola
 from hypothesis import given
 from hypothesis import strategies as st
-from specimens import SPECIMENS, epicycloid, hypocycloid, parabola
 
 from gearsolid.curves import curve as curve_module
 from gearsolid.curves.curve import Curve, Mirrored, Reversed, Section, Turned

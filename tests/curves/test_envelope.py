@@ -4,9 +4,9 @@ from math import pi
 
 import numpy as np
 import pytest
+from curve_specimens import epicycloid, hypocycloid, involute, rack_flank
 from hypothesis import given
 from hypothesis import strategies as st
-from specimens import epicycloid, hypocycloid, involute, rack_flank
 
 from gearsolid.curves.curve import Section, Turned
 from gearsolid.curves.envelope import Envelope

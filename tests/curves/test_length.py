@@ -2,10 +2,10 @@ from math import pi
 
 import numpy as np
 import pytest
+from curve_specimens import SPECIMENS, epicycloid, hypocycloid, involute, parabola
 from hypothesis import given
 from hypothesis import strategies as st
 from scipy.special import ellipe
-from specimens import SPECIMENS, epicycloid, hypocycloid, involute, parabola
 
 from gearsolid.curves.curve import Curve, Reversed, Section, Turned
 from gearsolid.curves.length import ArcLength

@@ -2,9 +2,9 @@ from math import pi
 
 import numpy as np
 import pytest
+from curve_specimens import epicycloid, involute, parabola
 from hypothesis import given
 from hypothesis import strategies as st
-from specimens import epicycloid, involute, parabola
 
 from gearsolid.curves.length import ArcLength
 from gearsolid.curves.parallel import Parallel

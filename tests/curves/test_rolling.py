@@ -4,11 +4,11 @@ from math import pi
 
 import numpy as np
 import pytest
+from curve_specimens import epicycloid, hypocycloid, parabola
 from hypothesis import assume, given
 from hypothesis import strategies as st
 from scipy.integrate import quad
 from scipy.special import ellipe
-from specimens import epicycloid, hypocycloid, parabola
 
 from gearsolid.curves.curve import Curve, Reversed
 from gearsolid.curves.length import ArcLength
