@@ -1,6 +1,7 @@
 """The root between two teeth: a flat with rounded corners, up to one full round."""
 
 from abc import ABC, abstractmethod
+from collections.abc import Callable
 from dataclasses import dataclass
 from math import pi
 from typing import NamedTuple
@@ -17,6 +18,9 @@ from gearsolid.errors import DesignError
 FULL_ROUND = float("inf")
 
 _SAMPLES = 65
+
+# What remains of a flank above its fillet counts as nothing below this share.
+_NOTHING = 1e-9
 
 
 class Foot(NamedTuple):
@@ -45,7 +49,7 @@ class Root(ABC):
     def land(self, foot: complex) -> Curve:
         """The root from the far side's mirrored foot to the next tooth's foot, given this tooth's foot [mm]."""
 
-    def largest_touch(self, flank: Curve) -> float:
+    def _largest_touch(self, flank: Curve) -> float:
         """Parameter of the flank where the largest fillet that fits touches it."""
         t = flank.sample(_SAMPLES)
 
@@ -69,10 +73,12 @@ class Root(ABC):
                 ends.append(_zero(condition, float(t[k - 1]), float(t[k])))
         return min(ends)
 
-    def fillet_radius(self, flank: Curve, touch: float) -> float:
-        """Radius of the fillet that touches a flank at a parameter [mm]."""
-        u = np.asarray(touch)
-        return float(self.rounding(flank.point(u), -1j * flank.tangent(u)))
+    def _radius(self, flank: Curve, u: Reals) -> Reals:
+        return self.rounding(flank.point(u), -1j * flank.tangent(u))
+
+    def largest_fillet(self, flank: Curve) -> float:
+        """Radius of the largest fillet that fits [mm]."""
+        return float(self._radius(flank, np.asarray(self._largest_touch(flank))))
 
     def foot(self, flank: Curve, fillet: float) -> Foot:
         """A flank joined to the root by a fillet.
@@ -86,10 +92,10 @@ class Root(ABC):
         """
         if fillet == 0:
             return Foot((Piece(flank, "flank"),), flank.start)
-        touch = self.largest_touch(flank)
-        largest = self.fillet_radius(flank, touch)
+        touch = self._largest_touch(flank)
+        largest = float(self._radius(flank, np.asarray(touch)))
         if fillet < largest:
-            touch = _zero(lambda u: self.fillet_radius(flank, float(u)) - fillet, flank.span[0], touch)
+            touch = _zero(lambda u: self._radius(flank, u) - fillet, flank.span[0], touch)
         elif np.isfinite(fillet) and fillet > largest * (1 + 1e-9):
             raise DesignError(
                 f"a root fillet of {fillet:g} mm does not fit: with these flanks and this depth the largest is "
@@ -102,10 +108,13 @@ class Root(ABC):
         down = self.down(centre)
         start = float(np.angle(down))
         arc = Arc(centre, radius, start, start - float(np.angle(down / -normal)) % (2 * pi))
-        return Foot((Piece(arc, "fillet"), Piece(Section(flank, touch, flank.span[1]), "flank")), point)
+        pieces = [Piece(arc, "fillet")]
+        if flank.span[1] - touch > _NOTHING * (flank.span[1] - flank.span[0]):
+            pieces.append(Piece(Section(flank, touch, flank.span[1]), "flank"))
+        return Foot(tuple(pieces), point)
 
 
-def _zero(f, low: float, high: float) -> float:  # type: ignore[no-untyped-def]
+def _zero(f: Callable[[Reals], Reals], low: float, high: float) -> float:
     return float(brentq(lambda u: float(f(np.asarray(u))), low, high, xtol=1e-15))
 
 
