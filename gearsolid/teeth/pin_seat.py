@@ -5,7 +5,6 @@ from math import acos, pi, sin
 
 import numpy as np
 
-from gearsolid.curves.curve import Curve
 from gearsolid.curves.primitives import Arc
 from gearsolid.errors import DesignError
 
@@ -70,15 +69,15 @@ class PinSeat:
         corner = self.edge_radius * np.exp(1j * self.bury_angle) - self.circle_radius
         return float(np.angle(corner))
 
-    def outer(self, hand: int) -> Curve:
+    def outer(self, hand: int) -> Arc:
         """The part of the first pin outside the edge, in travel order."""
         return Arc(self.circle_radius, self.pin_radius, -hand * self._exit_angle, hand * self._exit_angle)
 
-    def inner(self, hand: int) -> Curve:
+    def inner(self, hand: int) -> Arc:
         """The part of the first pin inside the edge, in travel order."""
         half = hand * (pi - self._exit_angle)
         return Arc(self.circle_radius, self.pin_radius, pi + half, pi - half)
 
-    def land(self, hand: int) -> Curve:
+    def land(self, hand: int) -> Arc:
         """The edge from the first pin to the next, in travel order."""
         return Arc(0, self.edge_radius, hand * self.bury_angle, hand * (2 * pi / self.pins - self.bury_angle))
