@@ -3,4 +3,109 @@
 Every name below is loaded on first use: `import gearsolid` itself loads neither numpy nor the CAD kernel.
 """
 
+from importlib import import_module
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from gearsolid.contact.result import Contact, RollResult, Verdict
+    from gearsolid.contact.roll import roll_test
+    from gearsolid.errors import DesignError, ExportError, GearsolidError, RecipeError, SolidError, ToleranceError
+    from gearsolid.output.folder import make_folder
+    from gearsolid.output.step import write_step
+    from gearsolid.output.stl import write_stl
+    from gearsolid.pairs.blank import Blank
+    from gearsolid.pairs.part import Body, Boss, Part
+    from gearsolid.pairs.planetary import PlanetaryStage
+    from gearsolid.pairs.reducer import OutputRollers, PinWheelReducer, Stack
+    from gearsolid.pairs.spur_pair import SpurPair
+    from gearsolid.recipe.read import Recipe, read_recipe
+    from gearsolid.shop.bore import Bore
+    from gearsolid.solids.assembly import assembly
+    from gearsolid.solids.body import body_solid
+    from gearsolid.solids.plugin import at_points, cut_form, on_plane, outline_face, outline_wire
+    from gearsolid.teeth.cycloidal import CycloidalGear
+    from gearsolid.teeth.internal import InternalGear
+    from gearsolid.teeth.involute import InvoluteGear
+    from gearsolid.teeth.pinwheel import CycloidDisc, PinRing
+    from gearsolid.teeth.rack import BasicRack
+
 __version__ = "0.1.0"
+
+_HOMES = {
+    "contact.result": ("Contact", "RollResult", "Verdict"),
+    "contact.roll": ("roll_test",),
+    "errors": ("DesignError", "ExportError", "GearsolidError", "RecipeError", "SolidError", "ToleranceError"),
+    "output.folder": ("make_folder",),
+    "output.step": ("write_step",),
+    "output.stl": ("write_stl",),
+    "pairs.blank": ("Blank",),
+    "pairs.part": ("Body", "Boss", "Part"),
+    "pairs.planetary": ("PlanetaryStage",),
+    "pairs.reducer": ("OutputRollers", "PinWheelReducer", "Stack"),
+    "pairs.spur_pair": ("SpurPair",),
+    "recipe.read": ("Recipe", "read_recipe"),
+    "shop.bore": ("Bore",),
+    "solids.assembly": ("assembly",),
+    "solids.body": ("body_solid",),
+    "solids.plugin": ("at_points", "cut_form", "on_plane", "outline_face", "outline_wire"),
+    "teeth.cycloidal": ("CycloidalGear",),
+    "teeth.internal": ("InternalGear",),
+    "teeth.involute": ("InvoluteGear",),
+    "teeth.pinwheel": ("CycloidDisc", "PinRing"),
+    "teeth.rack": ("BasicRack",),
+}
+_HOME = {name: f"gearsolid.{module}" for module, names in _HOMES.items() for name in names}
+
+__all__ = [
+    "BasicRack",
+    "Blank",
+    "Body",
+    "Bore",
+    "Boss",
+    "Contact",
+    "CycloidDisc",
+    "CycloidalGear",
+    "DesignError",
+    "ExportError",
+    "GearsolidError",
+    "InternalGear",
+    "InvoluteGear",
+    "OutputRollers",
+    "Part",
+    "PinRing",
+    "PinWheelReducer",
+    "PlanetaryStage",
+    "Recipe",
+    "RecipeError",
+    "RollResult",
+    "SolidError",
+    "SpurPair",
+    "Stack",
+    "ToleranceError",
+    "Verdict",
+    "assembly",
+    "at_points",
+    "body_solid",
+    "cut_form",
+    "make_folder",
+    "on_plane",
+    "outline_face",
+    "outline_wire",
+    "read_recipe",
+    "roll_test",
+    "write_step",
+    "write_stl",
+]
+
+
+def __getattr__(name: str) -> object:
+    """Load a public name from its room when it is first used."""
+    if name not in _HOME:
+        raise AttributeError(f"module 'gearsolid' has no attribute {name!r}")
+    value = getattr(import_module(_HOME[name]), name)
+    globals()[name] = value
+    return value
+
+
+def __dir__() -> list[str]:
+    return sorted({*globals(), *__all__})

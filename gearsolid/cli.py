@@ -98,6 +98,7 @@ def _roll(chosen: argparse.Namespace) -> int:
 
 
 def _make(chosen: argparse.Namespace) -> int:
+    import gearsolid.solids  # noqa: F401  (says what is missing when the CAD kernel does not load)
     from gearsolid.output.folder import make_folder
     from gearsolid.output.progress import progress
     from gearsolid.output.wording import VERDICTS, finding

@@ -14,7 +14,7 @@ from gearsolid.output.made import Made, distinct
 from gearsolid.output.page import page
 from gearsolid.output.progress import Tell
 from gearsolid.output.report import FileRecord, PartRecord, make_report
-from gearsolid.output.step import read_step, write_step
+from gearsolid.output.step import write_step
 from gearsolid.output.stl import write_stl
 from gearsolid.output.swap import REPORT, fingerprint, swapped_in
 from gearsolid.pairs.machine import Machine
@@ -95,7 +95,7 @@ def _check_names(made: Sequence[Made]) -> None:
 def _write_part(folder: Path, made: Made, solid: cq.Shape) -> PartRecord:
     step = write_step(folder / f"{made.file_name}.step", cq.Assembly(solid, name=made.name))
     stl = write_stl(folder / f"{made.file_name}.stl", made.body, _FACET_TOL)
-    (back,) = read_step(step.path)
+    (back,) = step.parts
     return PartRecord(
         name=made.name,
         placed_as=tuple(p.name for p in made.parts),

@@ -2,10 +2,11 @@
 
 from abc import abstractmethod
 from math import radians
-from typing import Literal, Self
+from typing import Literal, Protocol, Self
 
 from pydantic import model_validator
 
+from gearsolid.pairs.blank import Blank, body_of
 from gearsolid.pairs.machine import Machine
 from gearsolid.pairs.planetary import PlanetaryStage
 from gearsolid.pairs.reducer import OutputRollers, PinWheelReducer, Stack
@@ -14,6 +15,7 @@ from gearsolid.recipe.members import Bored, CycloidalTable, InvoluteTable, RingT
 from gearsolid.recipe.table import Table, entry, of_table
 from gearsolid.shop.bore import Bore
 from gearsolid.teeth.involute_relations import centre_distance
+from gearsolid.teeth.member import Member
 from gearsolid.teeth.pinwheel import CycloidDisc, PinRing
 
 _NAME = r"^[A-Za-z][A-Za-z0-9 -]*$"
@@ -78,10 +80,8 @@ class InvolutePair(_InvoluteStage):
         return self
 
     def build(self) -> SpurPair:
-        with of_table("driver"):
-            driver, driver_blank = self.driver.member(self.module, self.pressure_angle), self.driver.blank()
-        with of_table("driven"):
-            driven, driven_blank = self.driven.member(self.module, self.pressure_angle), self.driven.blank()
+        driver, driver_blank = _made("driver", self.driver, self.module, self.pressure_angle)
+        driven, driven_blank = _made("driven", self.driven, self.module, self.pressure_angle)
         shifts = self.driver.profile_shift + self.driven.profile_shift
         distance = self._distance(driver.teeth, driven.teeth, shifts)
         names = self.driver.name or "driver", self.driven.name or "driven"
@@ -96,10 +96,8 @@ class RingPair(_InvoluteStage):
     ring: RingTable = entry("the annulus it drives")
 
     def build(self) -> SpurPair:
-        with of_table("pinion"):
-            pinion, pinion_blank = self.pinion.member(self.module, self.pressure_angle), self.pinion.blank()
-        with of_table("ring"):
-            ring, ring_blank = self.ring.member(self.module, self.pressure_angle), self.ring.blank()
+        pinion, pinion_blank = _made("pinion", self.pinion, self.module, self.pressure_angle)
+        ring, ring_blank = _made("ring", self.ring, self.module, self.pressure_angle)
         shifts = self.pinion.profile_shift + self.ring.profile_shift
         distance = self._distance(pinion.teeth, -ring.teeth, shifts)
         return SpurPair(pinion, ring, distance, pinion_blank, ring_blank, "pinion", "ring")
@@ -123,10 +121,8 @@ class CycloidalPair(MachineTable):
 
     def build(self) -> SpurPair:
         circles = self.driver.describing(self.module), self.driven.describing(self.module)
-        with of_table("driver"):
-            driver, driver_blank = self.driver.member(self.module, circles[1]), self.driver.blank()
-        with of_table("driven"):
-            driven, driven_blank = self.driven.member(self.module, circles[0]), self.driven.blank()
+        driver, driver_blank = _made("driver", self.driver, self.module, circles[1])
+        driven, driven_blank = _made("driven", self.driven, self.module, circles[0])
         distance = self.centre_distance
         if distance is None:
             distance = driver.reference_radius + driven.reference_radius
@@ -146,12 +142,9 @@ class Planetary(_InvoluteStage):
     ring: RingTable = entry("the ring")
 
     def build(self) -> PlanetaryStage:
-        with of_table("sun"):
-            sun, sun_blank = self.sun.member(self.module, self.pressure_angle), self.sun.blank()
-        with of_table("planet"):
-            planet, planet_blank = self.planet.member(self.module, self.pressure_angle), self.planet.blank()
-        with of_table("ring"):
-            ring, ring_blank = self.ring.member(self.module, self.pressure_angle), self.ring.blank()
+        sun, sun_blank = _made("sun", self.sun, self.module, self.pressure_angle)
+        planet, planet_blank = _made("planet", self.planet, self.module, self.pressure_angle)
+        ring, ring_blank = _made("ring", self.ring, self.module, self.pressure_angle)
         shifts = self.sun.profile_shift + self.planet.profile_shift
         return PlanetaryStage(
             sun,
@@ -254,6 +247,30 @@ MACHINES: dict[str, type[MachineTable]] = {
     "planetary": Planetary,
     "pin-wheel": PinWheel,
 }
+
+
+class _MemberTable(Protocol):
+    """A table that gives a toothed member and its blank."""
+
+    def member(self, module: float, system: float, /) -> Member:
+        """The member, given the module [mm] and what its tooth system needs from the stage."""
+        ...
+
+    def blank(self) -> Blank:
+        """The body before teeth."""
+        ...
+
+
+def _made(name: str, table: _MemberTable, module: float, system: float) -> tuple[Member, Blank]:
+    """Member and blank of a table, proved to make a body.
+
+    Raises:
+        DesignError: they cannot; the message starts with the table's name.
+    """
+    with of_table(name):
+        member, blank = table.member(module, system), table.blank()
+        body_of(member.outline, blank)
+    return member, blank
 
 
 def _check_names(driver: _Named, driven: _Named) -> None:

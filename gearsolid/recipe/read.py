@@ -44,7 +44,10 @@ def read_recipe(path: Path) -> Recipe:
     data = _load(path)
     table = _table(path, data)
     try:
-        return Recipe(table.name, table.build(), rows(table))
+        machine = table.build()
+        # Bodies are made on first use; a recipe whose bodies cannot exist is refused here, not half way through.
+        _ = machine.parts
+        return Recipe(table.name, machine, rows(table))
     except DesignError as error:
         raise DesignError(f"{path}: {error}") from error
 

@@ -1,0 +1,214 @@
+"""Recipes: what is read, and how every mistake is named."""
+
+import re
+from pathlib import Path
+
+import pytest
+
+from gearsolid.errors import DesignError, RecipeError
+from gearsolid.pairs.planetary import PlanetaryStage
+from gearsolid.pairs.reducer import PinWheelReducer
+from gearsolid.pairs.spur_pair import SpurPair
+from gearsolid.recipe.allowed import sub_table
+from gearsolid.recipe.keys import key_rows, keys_text, page
+from gearsolid.recipe.machines import MACHINES
+from gearsolid.recipe.read import read_recipe
+from gearsolid.recipe.table import unit
+
+RECIPES = Path(__file__).parents[1] / "recipes"
+STAGE = (RECIPES / "planetary-stage.toml").read_text(encoding="utf-8")
+RING_PAIR = """
+name = "Ring pair"
+machine = "ring-pair"
+module = 1.5
+[pinion]
+teeth = 20
+face_width = 8
+[ring]
+teeth = 60
+face_width = 8
+tip_shortening = 0.3
+"""
+INVOLUTE_PAIR = """
+name = "Shifted pair"
+machine = "involute-pair"
+module = 2.0
+[driver]
+teeth = 12
+face_width = 20
+profile_shift = 0.4
+[driven]
+teeth = 25
+face_width = 18
+profile_shift = 0.1
+"""
+
+
+def read(tmp_path, text):
+    file = tmp_path / "recipe.toml"
+    file.write_text(text, encoding="utf-8")
+    return read_recipe(file)
+
+
+def refused(tmp_path, text, error=RecipeError):
+    with pytest.raises(error) as caught:
+        read(tmp_path, text)
+    return str(caught.value)
+
+
+@pytest.mark.parametrize(
+    ("file", "kind", "ratio"),
+    [
+        ("planetary-stage.toml", PlanetaryStage, 5),
+        ("printed-reducer.toml", PinWheelReducer, -29),
+        ("clock-pair.toml", SpurPair, -8 / 60),
+    ],
+)
+def test_a_shipped_recipe_gives_its_machine(file, kind, ratio):
+    recipe = read_recipe(RECIPES / file)
+    assert isinstance(recipe.machine, kind)
+    assert recipe.machine.ratio == pytest.approx(ratio, rel=1e-12)
+
+
+def test_a_pinion_drives_a_ring(tmp_path):
+    machine = read(tmp_path, RING_PAIR).machine
+    assert machine.ratio == 3
+    assert machine.centre_distance == pytest.approx(1.5 * (60 - 20) / 2)
+
+
+def test_centre_distance_left_out_is_the_one_without_play(tmp_path):
+    # Both flanks touch at that distance: a hair closer binds, a hair farther has play.
+    from gearsolid.contact.roll import roll_test
+
+    distance = read(tmp_path, INVOLUTE_PAIR).machine.centre_distance
+    assert distance > 37.0, "positive shifts push the axes apart"
+    found = [
+        roll_test(read(tmp_path, INVOLUTE_PAIR.replace("module", f"centre_distance = {distance + d!r}\nmodule")).machine)
+        for d in (-1e-3, 1e-3)
+    ]
+    assert found[0].worst.clearance == pytest.approx(-1e-3 * 0.35, rel=0.3)
+    assert found[1].worst.clearance == pytest.approx(1e-3 * 0.35, rel=0.3)
+
+
+def test_rows_show_defaults_and_units():
+    rows = read_recipe(RECIPES / "planetary-stage.toml").rows
+    assert rows["machine"]["pressure_angle"] == "20°", "a default"
+    assert rows["sun"]["bore"] == "8 mm"
+    assert rows["sun"]["key"] == "yes"
+    assert rows["planet"]["key"] == "no"
+    assert "bore" not in rows["ring"]
+
+
+MISTAKES = {
+    "out of range": ("teeth = 18", "teeth = 2", ["sun.teeth = 2: must be a whole number not below 3"]),
+    "wrong type": ("teeth = 18", 'teeth = "many"', ['sun.teeth = "many": must be a whole number']),
+    "half a tooth": ("teeth = 18", "teeth = 18.5", ["sun.teeth = 18.5: must be a whole number"]),
+    "a truth as a number": ("module = 1.0", "module = true", ["module = true: must be a number above 0, in mm"]),
+    "not a number": ("module = 1.0", "module = nan", ["module = NaN: must be a number above 0"]),
+    "mistyped key": ("teeth = 18", "theeth = 18", ['theeth = 18: no such key; did you mean "teeth"?', "sun.teeth: missing"]),
+    "unlike any key": ("teeth = 18", "teeth = 18\nweight = 3", ["sun.weight = 3: no such key; known here: ", "face_width"]),
+    "mistyped word": ('fixed = "ring"', 'fixed = "rong"', ['"sun" or "ring" or "carrier"', 'did you mean "ring"?']),
+    "mistyped table": ("[sun]", "[sum]", ['did you mean "sun"?', "sun: missing"]),
+    "value for a table": ("[ring]", "ring = 3\n[other]", ["ring = 3: must be a table", "other"]),
+    "key without bore": ("bore = 8.0", "", ["sun: a key or a chamfer is given without a bore"]),
+    "empty name": ('name = "Pump drive stage"', 'name = ""', ['name = "": must be a text']),
+    "two mistakes": ("teeth = 18\nface_width = 12.0", "teeth = 1\nface_width = -1", ["2 mistakes", "sun.teeth", "sun.face_width"]),
+    "other machine": ('machine = "planetary"', 'machine = "planetry"', ['did you mean "planetary"?', '"pin-wheel"']),
+    "no machine": ('machine = "planetary"', "", ["machine: missing", '"involute-pair"']),
+    "machine a number": ('machine = "planetary"', "machine = 3", ["machine = 3: must be"]),
+    "not TOML": ("[sun]", "[sun", ["is not TOML", "line"]),
+}
+
+
+@pytest.mark.parametrize(("old", "new", "expected"), MISTAKES.values(), ids=MISTAKES.keys())
+def test_a_mistake_is_named(tmp_path, old, new, expected):
+    if old.startswith(("[ring]", "[sun]")) and "=" in new:
+        text = new.split("\n")[0] + "\n" + STAGE.replace(old, new.split("\n")[1], 1)
+    else:
+        assert old in STAGE
+        text = STAGE.replace(old, new, 1)
+    message = refused(tmp_path, text)
+    assert "recipe.toml" in message
+    for part in expected:
+        assert part in message
+
+
+def test_names_of_a_pair_must_differ(tmp_path):
+    text = INVOLUTE_PAIR.replace("[driver]", '[driver]\nname = "driven"')
+    assert 'both called "driven"' in refused(tmp_path, text)
+
+
+def test_a_name_must_suit_every_file(tmp_path):
+    text = INVOLUTE_PAIR.replace("[driver]", '[driver]\nname = "Räd"')
+    assert "letters, digits, spaces and hyphens" in refused(tmp_path, text)
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "table", "words"),
+    [
+        ("bore = 8.0             # a 2 x 2 key, ISO/R 773\nkey = true", "bore = 5.0\nkey = true", "sun", "no standard key"),
+        ("rim_diameter = 86.0", "rim_diameter = 60.0", "ring", "rim"),
+        ("planets = 3", "planets = 4", "", "4 equally spaced planets"),
+        ("planets = 3", "planets = 5", "", "planets"),
+    ],
+    ids=["key", "rim", "assembly", "neighbours"],
+)
+def test_a_design_that_cannot_exist_names_its_table(tmp_path, old, new, table, words):
+    assert old in STAGE
+    message = refused(tmp_path, STAGE.replace(old, new), DesignError)
+    assert words in message
+    assert f"recipe.toml: {table}" in message
+
+
+@pytest.mark.parametrize("kind", ["missing", "folder", "binary"])
+def test_a_file_that_is_no_recipe(tmp_path, kind):
+    place = tmp_path / "place"
+    if kind == "folder":
+        place.mkdir()
+    if kind == "binary":
+        place.write_bytes(b"\xff\xfe\x00\x01")
+    with pytest.raises(RecipeError, match=re.escape(str(place))):
+        read_recipe(place)
+
+
+def tables(model):
+    yield model
+    for field in model.model_fields.values():
+        if sub_table(field):
+            yield from tables(sub_table(field))
+
+
+@pytest.mark.parametrize("kind", MACHINES)
+def test_every_key_is_documented(kind):
+    assert MACHINES[kind].__doc__
+    for table in tables(MACHINES[kind]):
+        for key, field in table.model_fields.items():
+            assert field.description, f"{table.__name__}.{key}"
+            assert not field.description.endswith(".")
+            assert unit(field) in {"", "mm", "deg"}
+
+
+@pytest.mark.parametrize("kind", MACHINES)
+def test_every_key_with_a_letter_lost_is_guessed(kind, tmp_path):
+    for table in tables(MACHINES[kind]):
+        known = list(table.model_fields)
+        from gearsolid.recipe.mistakes import nearest
+
+        for key in (k for k in known if len(k) > 3):
+            assert f'"{key}"' in nearest(key[:2] + key[3:], known)
+
+
+@pytest.mark.parametrize("kind", MACHINES)
+def test_keys_lists_every_key(kind):
+    text = keys_text(kind)
+    assert all(row.path in text and row.meaning in text for row in key_rows(MACHINES[kind]))
+
+
+def test_keys_of_an_unknown_machine():
+    with pytest.raises(RecipeError, match='did you mean "planetary"'):
+        keys_text("planetari")
+
+
+def test_the_page_of_recipes_lists_the_keys_as_they_are():
+    shown = (RECIPES / "README.md").read_text(encoding="utf-8")
+    assert page() in shown, "write the keys anew: python -m gearsolid.recipe.keys"
