@@ -79,13 +79,17 @@ def _no_span(gear: InvoluteGear, teeth: int) -> DesignError:
 def ideal_pin(member: Involute) -> float:
     """Diameter [mm] of pins or balls that touch the flanks at the circle of diameter d + 2 x mn. ISO 21771.
 
-    For helical members by the straight gear that stands for them, with z / cos^3 of the helix angle teeth.
+    Where that circle crosses no involute, the nearest one that does. For helical members by the straight gear that
+    stands for them, with z / cos^3 of the helix angle teeth.
     """
     helix, angle = np.cos(np.radians(member.helix_angle_deg)), np.radians(member.pressure_angle_deg)
     radius = member.reference_radius / helix**2
     base = radius * np.cos(angle)
     half_space = (np.pi * member.module - member.thickness * helix) / (2 * radius)
-    tangent = reach(radius + member.hand * member.profile_shift * member.module, base) / base
+    ends = sorted((member.form_radius, member.tip_radius))
+    shifted = member.reference_radius + member.hand * member.profile_shift * member.module
+    touch = radius + float(np.clip(shifted, *ends)) - member.reference_radius
+    tangent = reach(touch, base) / base
     centre = tangent - inv(angle) + member.hand * half_space
     return float(2 * member.hand * base * (np.tan(centre) - tangent))
 

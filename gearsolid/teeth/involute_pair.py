@@ -62,7 +62,7 @@ class InvolutePair:
     @property
     def reference_distance(self) -> float:
         """Centre distance of the reference circles [mm]."""
-        return self.mate.hand * (self.mate.reference_radius + self.mate.hand * self.gear.reference_radius)
+        return self.mate.reference_radius + self.mate.hand * self.gear.reference_radius
 
     @cached_property
     def centre_distance(self) -> float:
