@@ -86,9 +86,9 @@ def ideal_pin(member: Involute) -> float:
     radius = member.reference_radius / helix**2
     base = radius * np.cos(angle)
     half_space = (np.pi * member.module - member.thickness * helix) / (2 * radius)
-    ends = sorted((member.form_radius, member.tip_radius))
+    inner, outer = sorted((member.form_radius, member.tip_radius))
     shifted = member.reference_radius + member.hand * member.profile_shift * member.module
-    touch = radius + float(np.clip(shifted, *ends)) - member.reference_radius
+    touch = radius + min(max(shifted, inner), outer) - member.reference_radius
     tangent = reach(touch, base) / base
     centre = tangent - inv(angle) + member.hand * half_space
     return float(2 * member.hand * base * (np.tan(centre) - tangent))
