@@ -35,23 +35,6 @@ _SETTINGS = {
 
 
 @dataclass(frozen=True)
-class StepFile:
-    """A STEP file as it read back.
-
-    Args:
-        path: where it is.
-        size: [bytes].
-        names: of the placed solids; each is one valid solid.
-        volume: of all placed solids together [mm3].
-    """
-
-    path: Path
-    size: int
-    names: tuple[str, ...]
-    volume: float
-
-
-@dataclass(frozen=True)
 class Placed:
     """A named shape and where it stands."""
 
@@ -59,6 +42,23 @@ class Placed:
     shape: cq.Shape
     location: cq.Location
     colour: cq.Color | None = None
+
+
+@dataclass(frozen=True)
+class StepFile:
+    """A STEP file as it read back.
+
+    Args:
+        path: where it is.
+        size: [bytes].
+        parts: the placed shapes as read; each is one valid solid.
+        volume: of all of them together [mm3].
+    """
+
+    path: Path
+    size: int
+    parts: tuple[Placed, ...]
+    volume: float
 
 
 def write_step(
@@ -90,7 +90,7 @@ def write_step(
         found = read_step(fresh)
         volume = prove(found, {p.name: volumes[p.shape] for p in parts}, path)
         size = fresh.stat().st_size
-    return StepFile(path, size, tuple(p.name for p in found), volume)
+    return StepFile(path, size, tuple(found), volume)
 
 
 def prove(found: Sequence[Placed], volumes: dict[str, float], path: Path) -> float:

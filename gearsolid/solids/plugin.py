@@ -88,7 +88,7 @@ def cut_form(hole: Outline, depth: float, tol: float = 1e-4) -> Step:
 
     Raises:
         DesignError: the outline has its material inside, or the depth is not above 0.
-        SolidError: the kernel's cut leaves a faulty part (raised when the step is invoked).
+        SolidError: the cut leaves nothing or a faulty part (raised when the step is invoked).
     """
     if not hole.area < 0:
         raise DesignError("this outline has its material inside; give the boundary of a hole, such as an annulus has")
@@ -100,8 +100,8 @@ def cut_form(hole: Outline, depth: float, tol: float = 1e-4) -> Step:
         tools = [plug.moved(work.plane.location) for plug in plugs]
         part = work.findSolid()
         left = part.cut(*tools)
-        if not is_valid(left):
-            raise SolidError("the part is faulty after the cut; keep the form clear of its edges and other holes")
+        if not left.Solids() or not is_valid(left):
+            raise SolidError("the cut leaves no sound part; keep the form inside it and clear of edges and other holes")
         return work.newObject([left])
 
     return cut

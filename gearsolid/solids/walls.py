@@ -77,9 +77,10 @@ def _mouth_cones(bore: Bore, z: float, height: float) -> tuple[cq.Solid, cq.Soli
     """Cones that chamfer both mouths; they run on past the ends of the chamfer, so that no edges coincide."""
     over = bore.radius / 2
     wide, narrow, deep = bore.radius + bore.chamfer + over, bore.radius - over, bore.chamfer + 2 * over
-    up, down = cq.Vector(0, 0, 1), cq.Vector(0, 0, -1)
-    low = cq.Solid.makeCone(wide, narrow, deep, cq.Vector(0, 0, z - over), up)
-    return low, cq.Solid.makeCone(wide, narrow, deep, cq.Vector(0, 0, z + height + over), down)
+    low = cq.Solid.makeCone(wide, narrow, deep, cq.Vector(0, 0, z - over))
+    # Both cones look upward, so that their seams fall on the +x axis: into the keyway, where no face is left to split.
+    high = cq.Solid.makeCone(narrow, wide, deep, cq.Vector(0, 0, z + height + over - deep))
+    return low, high
 
 
 def _inner_wire(face: cq.Face) -> TopoDS_Wire:

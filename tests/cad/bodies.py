@@ -1,0 +1,52 @@
+"""Bodies of every kind of boundary the solids have to carry, shared by the CAD tests."""
+
+from gearsolid.curves.loops import disc, holes, pins
+from gearsolid.curves.outline import Outline, Piece
+from gearsolid.curves.primitives import Segment
+from gearsolid.pairs.part import Body, Boss
+from gearsolid.shop.bore import Bore
+from gearsolid.teeth.cycloidal import CycloidalGear
+from gearsolid.teeth.internal import InternalGear
+from gearsolid.teeth.involute import InvoluteGear
+from gearsolid.teeth.pinwheel import CycloidDisc, PinRing
+
+SQUARE = Outline((Piece(Segment(10 - 10j, 10 + 10j), "tip"),), 4)
+PINS = PinRing(12, 50, 5, 49)
+
+PLAIN = {
+    "square": Body(SQUARE, 5),
+    "disc on a height": Body(disc(12), 3, z=7.5),
+    "square with round bore": Body(SQUARE, 5, bore=Bore(8)),
+    "square with chamfered bore": Body(SQUARE, 5, bore=Bore(8, None, 0.5)),
+    "square with keyed bore": Body(SQUARE, 5, bore=Bore.keyed(8)),
+    "square with chamfered keyed bore": Body(SQUARE, 5, bore=Bore.keyed(10, 0.5), z=-2),
+    "plate with holes": Body(disc(30), 4, holes=(holes(5, 18, 4, 0.3),), bore=Bore(10)),
+    "plate with one hole off the axis": Body(disc(30), 4, holes=(holes(1, 18, 4),)),
+    "carrier with pins": Body(disc(30), 4, bore=Bore(12), bosses=(Boss(pins(3, 20, 4), 9),)),
+    "hub without bore": Body(disc(30), 4, bosses=(Boss(disc(8), 6),)),
+    "hub, keyed chamfered bore, pins and holes": Body(
+        disc(40),
+        6,
+        holes=(holes(6, 28, 5),),
+        bore=Bore.keyed(20, 1.0),
+        bosses=(Boss(disc(17), 8), Boss(pins(6, 28, 2, 0.5236), 5)),
+        z=3,
+    ),
+    "pin ring in one piece": Body(disc(62), 8, holes=(PINS.studded, holes(4, 57, 1.5, 0.2))),
+    "housing with pockets": Body(disc(62), 8, holes=(PINS.pocketed,)),
+}
+
+TOOTHED = {
+    "involute 20, keyed chamfered bore": Body(InvoluteGear(20, 2).outline, 10, bore=Bore.keyed(14, 0.5)),
+    "undercut involute 7": Body(InvoluteGear(7, 2).outline, 10, bore=Bore(3)),
+    "small involute 8": Body(InvoluteGear(8, 0.3, profile_shift=0.5).outline, 2),
+    "helical section 23": Body(InvoluteGear(23, 2, helix_angle_deg=25).outline, 10),
+    "involute annulus 48": Body(disc(56), 10, holes=(InternalGear(48, 2).outline,)),
+    "cycloid disc with roller holes": Body(
+        CycloidDisc(11, 1.5, 50, 5).outline, 10, holes=(holes(6, 25, 6.5),), bore=Bore(20)
+    ),
+    "clock wheel": Body(CycloidalGear(60, 1.0, 4.0, 15.0, 1.3, 1.6).outline, 2, bore=Bore(4)),
+    "clock pinion": Body(CycloidalGear(8, 1.0, 15.0, 2.0, 0.8, 1.6).outline, 6, bore=Bore(2)),
+}
+
+BODIES = PLAIN | TOOTHED
