@@ -4,17 +4,16 @@ The practical numbers are those of BS 978-2:1952 (fine pitch gears, cycloidal ty
 factor is computed: the formula gives every recalled table value to its last digit.
 """
 
-from dataclasses import dataclass
 from enum import StrEnum
 from math import inf, pi
 
 from gearsolid.errors import DesignError
 from gearsolid.teeth.clock_gear import ClockGear
+from gearsolid.teeth.clock_pair import ClockPair, Drives
 from gearsolid.teeth.cycloid import Cycloid
 from gearsolid.teeth.cycloidal import CycloidalGear
 from gearsolid.teeth.cycloidal_relations import check_mates
 from gearsolid.teeth.leaf_tip import Ogive
-from gearsolid.teeth.member import Member
 
 # BS 978-2:1952, from memory; lengths in modules.
 _PRACTICAL = 0.95
@@ -39,40 +38,6 @@ _TOPS = {
     LeafTop.MEDIUM_OGIVE: ((0.67, 0.70), (0.805, 0.83)),
     LeafTop.HIGH_OGIVE: ((0.855, 1.05), (1.05, 1.25)),
 }
-
-
-class Drives(StrEnum):
-    """Which member of a clock pair drives."""
-
-    WHEEL = "wheel"
-    PINION = "pinion"
-
-
-@dataclass(frozen=True)
-class ClockPair:
-    """A wheel and a pinion that work together.
-
-    Args:
-        wheel: the larger member.
-        pinion: the smaller one.
-        centre_distance: [mm].
-        drives: which of them drives.
-    """
-
-    wheel: Member
-    pinion: Member
-    centre_distance: float
-    drives: Drives
-
-    @property
-    def driver(self) -> Member:
-        """The member that drives."""
-        return self.wheel if self.drives is Drives.WHEEL else self.pinion
-
-    @property
-    def driven(self) -> Member:
-        """The member that is driven."""
-        return self.pinion if self.drives is Drives.WHEEL else self.wheel
 
 
 def theoretical_addendum_factor(leaves: int, ratio: float) -> float:
@@ -151,7 +116,7 @@ def ogival_pair(
         (factor + _CLEARANCE) * module,
         leaf_root_fillet,
     )
-    return ClockPair(wheel, pinion, _distance(wheel, pinion), Drives.WHEEL)
+    return ClockPair(wheel, pinion, wheel.reference_radius + pinion.reference_radius, Drives.WHEEL)
 
 
 def cycloidal_pair(
@@ -207,7 +172,7 @@ def cycloidal_pair(
     }
     check_mates(members[driver], members[driven])
     wheel, pinion = members[wheel_teeth], members[leaves]
-    return ClockPair(wheel, pinion, _distance(wheel, pinion), drives)
+    return ClockPair(wheel, pinion, wheel.reference_radius + pinion.reference_radius, drives)
 
 
 def _addendum_for(share: float, teeth: int, mate: int, module: float, thickness: float) -> float:
@@ -232,7 +197,3 @@ def _check_counts(wheel_teeth: int, leaves: int, module: float) -> None:
         )
     if not module > 0:
         raise DesignError(f"the module is {module:g} mm; it must be above 0")
-
-
-def _distance(wheel: Member, pinion: Member) -> float:
-    return wheel.reference_radius + pinion.reference_radius
