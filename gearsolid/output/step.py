@@ -23,7 +23,7 @@ from OCP.XCAFDoc import XCAFDoc_ColorGen, XCAFDoc_DocumentTool, XCAFDoc_ShapeToo
 from gearsolid.errors import ExportError, SolidError
 from gearsolid.output.step_text import share_geometry
 from gearsolid.output.whole_file import whole_file
-from gearsolid.solids.check import check_solid, exact_volume
+from gearsolid.solids.check import check_volume, exact_volume, valid_solid
 
 # Settings of the kernel's writer, which are global: schema AP214, no curves in the parameter space of faces, mm.
 _SETTINGS = {
@@ -110,13 +110,14 @@ def prove(found: Sequence[Placed], volumes: dict[str, float], path: Path) -> flo
     names = [p.name for p in found]
     if sorted(names) != sorted(volumes):
         raise ExportError(f"{path} reads back with the parts {sorted(names)}; written were {sorted(volumes)}")
-    proved = {(p.shape, volumes[p.name]): p.name for p in found}
-    for (shape, volume), name in proved.items():
-        try:
-            check_solid(shape, volume, name)
-        except SolidError as error:
-            raise ExportError(f"{path} does not read back as written: {error}") from error
-    measured = {shape: exact_volume(shape) for shape, _ in proved}
+    measured: dict[cq.Shape, float] = {}
+    try:
+        for part in found:
+            if part.shape not in measured:
+                measured[part.shape] = exact_volume(valid_solid(part.shape, part.name))
+            check_volume(measured[part.shape], volumes[part.name], part.name)
+    except SolidError as error:
+        raise ExportError(f"{path} does not read back as written: {error}") from error
     return sum(measured[p.shape] for p in found)
 
 

@@ -38,6 +38,17 @@ def check_solid(shape: cq.Shape, volume: float, name: str = "body") -> cq.Solid:
     Raises:
         SolidError: not exactly one solid, not valid, or of another volume.
     """
+    solid = valid_solid(shape, name)
+    check_volume(exact_volume(solid), volume, name)
+    return solid
+
+
+def valid_solid(shape: cq.Shape, name: str) -> cq.Solid:
+    """The one solid in a shape, when the kernel's checker finds no fault in it.
+
+    Raises:
+        SolidError: not exactly one solid, or not valid.
+    """
     solids = shape.Solids()
     if len(solids) != 1:
         raise SolidError(f"{name}: the CAD kernel returned {len(solids)} solids instead of one")
@@ -46,10 +57,17 @@ def check_solid(shape: cq.Shape, volume: float, name: str = "body") -> cq.Solid:
             f"{name}: the CAD kernel's checker finds the solid faulty; usually boundaries cross or touch, or a hole or "
             "boss reaches over the edge of its face: check the radii of holes, bore, keyway and bosses"
         )
-    reached = exact_volume(solids[0])
+    return solids[0]
+
+
+def check_volume(reached: float, volume: float, name: str) -> None:
+    """Refuse a volume [mm3] that is not the expected one.
+
+    Raises:
+        SolidError: they differ by more than 1e-6 of it.
+    """
     if not abs(reached - volume) <= VOLUME_TOL * abs(volume):
         raise SolidError(
             f"{name}: the solid has a volume of {reached:.9g} mm3 and the design {volume:.9g} mm3; they must agree "
             f"within {VOLUME_TOL:g} of it"
         )
-    return solids[0]
