@@ -13,11 +13,9 @@ from scipy.optimize import brentq
 from gearsolid.curves.curve import Curve, Reals
 from gearsolid.curves.parallel import Parallel
 from gearsolid.errors import DesignError
-from gearsolid.teeth.internal import InternalGear
 from gearsolid.teeth.involute import InvoluteGear
+from gearsolid.teeth.involute_member import InvoluteMember
 from gearsolid.teeth.involute_relations import inv, inverse_inv, reach
-
-Involute = InvoluteGear | InternalGear
 
 
 def ideal_span_teeth(gear: InvoluteGear) -> float:
@@ -33,7 +31,7 @@ def ideal_span_teeth(gear: InvoluteGear) -> float:
 def span_limits(gear: InvoluteGear) -> tuple[int, int]:
     """Fewest and most teeth over which parallel anvils touch the involutes [-]; the first above the second if none."""
     start = gear.thickness_at(gear.base_radius)
-    reaches = (reach(r, gear.base_radius) for r in (gear.form_radius, gear.tip_radius))
+    reaches = (reach(r, gear.base_radius) for r in (gear.form_radius, gear.involute_end_radius))
     low, high = ((2 * length - start) / gear.base_pitch + 1 for length in reaches)
     return max(1, int(np.ceil(low))), int(np.floor(high))
 
@@ -76,7 +74,7 @@ def _no_span(gear: InvoluteGear, teeth: int) -> DesignError:
     )
 
 
-def ideal_pin(member: Involute) -> float:
+def ideal_pin(member: InvoluteMember) -> float:
     """Diameter [mm] of pins or balls that touch the flanks at the circle of diameter d + 2 x mn. ISO 21771.
 
     Where that circle crosses no involute, the nearest one that does. For helical members by the straight gear that
@@ -86,7 +84,7 @@ def ideal_pin(member: Involute) -> float:
     radius = member.reference_radius / helix**2
     base = radius * np.cos(angle)
     half_space = (np.pi * member.module - member.thickness * helix) / (2 * radius)
-    inner, outer = sorted((member.form_radius, member.tip_radius))
+    inner, outer = sorted((member.form_radius, member.involute_end_radius))
     shifted = member.reference_radius + member.hand * member.profile_shift * member.module
     touch = radius + min(max(shifted, inner), outer) - member.reference_radius
     tangent = reach(touch, base) / base
@@ -94,7 +92,7 @@ def ideal_pin(member: Involute) -> float:
     return float(2 * member.hand * base * (np.tan(centre) - tangent))
 
 
-def pin_dimension(member: Involute, pin: float) -> float:
+def pin_dimension(member: InvoluteMember, pin: float) -> float:
     """Dimension over two pins or balls in opposite spaces of a gear, between them in a ring [mm]. ISO 21771.
 
     Args:
@@ -120,7 +118,7 @@ def pin_dimension(member: Involute, pin: float) -> float:
     return float(2 * member.base_radius / np.cos(angle) * odd) + member.hand * pin
 
 
-def drawn_pin_dimension(member: Involute, pin: float) -> float:
+def drawn_pin_dimension(member: InvoluteMember, pin: float) -> float:
     """Dimension over (in a ring: between) two pins or balls [mm], by circles laid into two spaces of the outline.
 
     Raises:
@@ -136,10 +134,10 @@ def drawn_pin_dimension(member: Involute, pin: float) -> float:
     return float(abs(centre - opposite)) + member.hand * pin
 
 
-def _no_touch(member: Involute, pin: float) -> DesignError:
+def _no_touch(member: InvoluteMember, pin: float) -> DesignError:
     return DesignError(
         f"pins of {pin:.4g} mm do not touch the involutes of this {member.teeth}-tooth member between radius "
-        f"{member.form_radius:.5g} and {member.tip_radius:.5g} mm; about {ideal_pin(member):.4g} mm does"
+        f"{member.form_radius:.5g} and {member.involute_end_radius:.5g} mm; about {ideal_pin(member):.4g} mm does"
     )
 
 
@@ -189,8 +187,10 @@ def rack_pin_height(*, module: float, pressure_angle_deg: float, thickness: floa
     return float(height - (np.pi * module - thickness) / (2 * np.tan(a)) + pin / 2 * (1 + 1 / np.sin(a)))
 
 
-def _upper_flank(member: Involute) -> Curve:
-    return next(p.curve for p in member.outline.pieces if p.role == "flank" and p.curve.start.imag > 0)
+def _upper_flank(member: InvoluteMember) -> Curve:
+    """The involute above the +x axis, without relief."""
+    upper = (p.curve for p in member.outline.pieces if p.role == "flank" and p.curve.start.imag > 0)
+    return min(upper, key=lambda c: min(abs(abs(z) - member.form_radius) for z in (c.start, c.end)))
 
 
 def _root(curve: Curve, function: Callable[[Reals], float]) -> Reals | None:

@@ -6,11 +6,10 @@ from typing import ClassVar
 
 import numpy as np
 
-from gearsolid.curves.curve import Mirrored
-from gearsolid.curves.outline import Outline, Piece
-from gearsolid.curves.primitives import Arc
+from gearsolid.curves.curve import Curve
 from gearsolid.errors import DesignError
-from gearsolid.teeth.involute_member import NO_LAND, InvoluteMember
+from gearsolid.teeth.involute_member import InvoluteMember
+from gearsolid.teeth.involute_numbers import NO_LAND
 from gearsolid.teeth.pinion_cutter import Generation, PinionCutter, largest_cutter
 from gearsolid.teeth.ring_margins import RingMargins
 
@@ -39,6 +38,7 @@ class InternalGear(InvoluteMember):
         super().__post_init__()
         self._check_tooth()
         self._generation.check()
+        self._check_tip_form()
 
     def _check_tooth(self) -> None:
         if self.tip_radius < self.base_radius:
@@ -66,7 +66,7 @@ class InternalGear(InvoluteMember):
         """The cutter used: the one given, or the one chosen for this ring."""
         return self.cutter or largest_cutter(self)
 
-    @property
+    @cached_property
     def _generation(self) -> Generation:
         return Generation(self, self.tool)
 
@@ -85,18 +85,14 @@ class InternalGear(InvoluteMember):
         """Radius up to which the flank is an involute [mm] (half the root form diameter)."""
         return float(np.hypot(self._generation.form_reach, self.base_radius))
 
-    @cached_property
-    def outline(self) -> Outline:
-        """One pitch, clockwise, a tooth centred on the +x axis: fillet, flank, tip, flank, fillet, root."""
-        fillet, flank = self._generation.fillet, self._generation.flank
-        tip, land = float(np.angle(flank.end)), float(np.angle(fillet.start))
-        pieces = [
-            Piece(fillet, "fillet"),
-            Piece(flank, "flank"),
-            Piece(Arc(0, self.tip_radius, tip, -tip), "tip"),
-            Piece(Mirrored(flank), "flank"),
-            Piece(Mirrored(fillet), "fillet"),
-        ]
-        if self._generation.half_land > NO_LAND * self.module:
-            pieces.append(Piece(Arc(0, self.root_radius, -land, land - 2 * np.pi / self.teeth), "root"))
-        return Outline(tuple(pieces), self.teeth)
+    @property
+    def _fillet(self) -> Curve:
+        return self._generation.fillet
+
+    @property
+    def _flank(self) -> Curve:
+        return self._generation.flank
+
+    @property
+    def _half_root_land(self) -> float:
+        return self._generation.half_land

@@ -6,13 +6,13 @@ from functools import cached_property
 import numpy as np
 from scipy.optimize import brentq
 
-from gearsolid.curves.curve import Mirrored, Reversed, Section
+from gearsolid.curves.curve import Reversed, Section
 from gearsolid.curves.envelope import Envelope
-from gearsolid.curves.outline import Outline, Piece
-from gearsolid.curves.primitives import Arc, Ellipse, Segment
+from gearsolid.curves.primitives import Ellipse, Segment
 from gearsolid.curves.rolling import LineOnCircle
 from gearsolid.errors import DesignError
-from gearsolid.teeth.involute_member import NO_LAND, InvoluteMember
+from gearsolid.teeth.involute_member import InvoluteMember
+from gearsolid.teeth.involute_numbers import NO_LAND
 from gearsolid.teeth.involute_relations import inv, inverse_inv, reach
 
 
@@ -33,6 +33,7 @@ class InvoluteGear(InvoluteMember):
         self._check_root()
         self._check_tip()
         self._check_undercut()
+        self._check_tip_form()
 
     def _check_root(self) -> None:
         if self.root_radius <= 0:
@@ -179,20 +180,3 @@ class InvoluteGear(InvoluteMember):
         high = self._rack_height(self.tip_radius)
         lean, half = float(np.tan(self.transverse_angle)), self.thickness / 2
         return Envelope(Segment(complex(low, low * lean - half), complex(high, high * lean - half)), self._motion)
-
-    @cached_property
-    def outline(self) -> Outline:
-        """One pitch, counter-clockwise, the tooth centred on the +x axis: fillet, flank, tip, flank, fillet, root."""
-        fillet, flank = self._fillet, self._flank
-        tip = float(np.angle(flank.end))
-        root, land = np.pi / self.teeth, self._half_root_land / self.reference_radius
-        pieces = [
-            Piece(fillet, "fillet"),
-            Piece(flank, "flank"),
-            Piece(Arc(0, self.tip_radius, tip, -tip), "tip"),
-            Piece(Mirrored(flank), "flank"),
-            Piece(Mirrored(fillet), "fillet"),
-        ]
-        if self._half_root_land > NO_LAND * self.module:
-            pieces.append(Piece(Arc(0, self.root_radius, root - land, root + land), "root"))
-        return Outline(tuple(pieces), self.teeth)

@@ -1,4 +1,4 @@
-"""What external and internal involute members share: their circles and tooth thicknesses."""
+"""Circles and tooth thicknesses of involute members, external and internal, from their numbers alone."""
 
 from dataclasses import dataclass
 from typing import ClassVar
@@ -14,7 +14,7 @@ NO_LAND = 1e-9
 
 
 @dataclass(frozen=True)
-class InvoluteMember:
+class InvoluteNumbers:
     """Numbers of one involute member; signs of ISO 21771, lengths always positive.
 
     Args:

@@ -7,8 +7,8 @@ import numpy as np
 
 from gearsolid.errors import DesignError
 from gearsolid.teeth import involute_relations as relations
-from gearsolid.teeth.internal import InternalGear
 from gearsolid.teeth.involute import InvoluteGear
+from gearsolid.teeth.involute_member import InvoluteMember
 from gearsolid.teeth.involute_relations import reach
 from gearsolid.teeth.ring_margins import RingMargins, ring_margins
 
@@ -27,7 +27,7 @@ class InvolutePair:
     """
 
     gear: InvoluteGear
-    mate: InvoluteGear | InternalGear
+    mate: InvoluteMember
     distance: float | None = None
 
     def __post_init__(self) -> None:
@@ -105,8 +105,9 @@ class InvolutePair:
 
         Limited by both tips and by where both flanks start to be involutes.
         """
-        first = max(self._reach_on_gear(self.mate.tip_radius), reach(self.gear.form_radius, self.gear.base_radius))
-        last = min(reach(self.gear.tip_radius, self.gear.base_radius), self._reach_on_gear(self.mate.form_radius))
+        ours, theirs = self.gear, self.mate
+        first = max(self._reach_on_gear(theirs.tip_form_radius), reach(ours.form_radius, ours.base_radius))
+        last = min(reach(ours.tip_form_radius, ours.base_radius), self._reach_on_gear(theirs.form_radius))
         return first, last
 
     @property

@@ -11,7 +11,7 @@ from gearsolid.curves.primitives import Arc
 from gearsolid.curves.rolling import CircleOnCircle, LineOnCircle
 from gearsolid.curves.roulette import Trace
 from gearsolid.errors import DesignError
-from gearsolid.teeth.involute_member import NO_LAND, InvoluteMember
+from gearsolid.teeth.involute_numbers import NO_LAND, InvoluteNumbers
 from gearsolid.teeth.involute_relations import inv, reach, working_angle
 from gearsolid.teeth.rack import BasicRack
 from gearsolid.teeth.ring_margins import RingMargins, ring_margins
@@ -59,7 +59,7 @@ class Generation:
         DesignError: the cutter has as many teeth as the ring, or their shifts allow no working pressure angle.
     """
 
-    ring: InvoluteMember
+    ring: InvoluteNumbers
     cutter: PinionCutter
 
     def __post_init__(self) -> None:
@@ -69,10 +69,10 @@ class Generation:
             )
 
     @cached_property
-    def pinion(self) -> InvoluteMember:
+    def pinion(self) -> InvoluteNumbers:
         """The cutter as a member. Thinner ring teeth come from its thicker teeth, so that the root stays in place."""
         ring, cutter = self.ring, self.cutter
-        return InvoluteMember(
+        return InvoluteNumbers(
             cutter.teeth,
             ring.module,
             ring.pressure_angle_deg,
@@ -188,7 +188,7 @@ class Generation:
             )
 
 
-def _enough_shift(ring: InvoluteMember, teeth: int) -> float:
+def _enough_shift(ring: InvoluteNumbers, teeth: int) -> float:
     """Least cutter shift from 0 on with which the cutter's involute reaches the ring's tip [-]."""
     gap = (ring.teeth - teeth) / ring.teeth * ring.base_radius
     working = np.arctan(reach(ring.tip_radius, ring.base_radius) / gap)
@@ -197,7 +197,7 @@ def _enough_shift(ring: InvoluteMember, teeth: int) -> float:
     return max(0.0, float(least))
 
 
-def _cutter_to_depth(ring: InvoluteMember, cutter: PinionCutter) -> PinionCutter:
+def _cutter_to_depth(ring: InvoluteNumbers, cutter: PinionCutter) -> PinionCutter:
     """The cutter with the addendum that cuts the ring to the root of its basic rack."""
     root = ring.reference_radius + ring.module * (ring.rack.dedendum - ring.profile_shift)
     generation = Generation(ring, cutter)
@@ -205,7 +205,7 @@ def _cutter_to_depth(ring: InvoluteMember, cutter: PinionCutter) -> PinionCutter
     return replace(cutter, addendum=height / ring.module - cutter.profile_shift)
 
 
-def largest_cutter(ring: InvoluteMember) -> PinionCutter:
+def largest_cutter(ring: InvoluteNumbers) -> PinionCutter:
     """The cutter with most teeth that forms the whole flank to full depth and can be fed radially out of the ring.
 
     Small rings allow no such cutter; they get the one with most teeth that works along the axis. Steep flanks leave no
