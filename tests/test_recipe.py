@@ -83,7 +83,9 @@ def test_centre_distance_left_out_is_the_one_without_play(tmp_path):
     distance = read(tmp_path, INVOLUTE_PAIR).machine.centre_distance
     assert distance > 37.0, "positive shifts push the axes apart"
     found = [
-        roll_test(read(tmp_path, INVOLUTE_PAIR.replace("module", f"centre_distance = {distance + d!r}\nmodule")).machine)
+        roll_test(
+            read(tmp_path, INVOLUTE_PAIR.replace("module", f"centre_distance = {distance + d!r}\nmodule")).machine
+        )
         for d in (-1e-3, 1e-3)
     ]
     assert found[0].worst.clearance == pytest.approx(-1e-3 * 0.35, rel=0.3)
@@ -105,14 +107,26 @@ MISTAKES = {
     "half a tooth": ("teeth = 18", "teeth = 18.5", ["sun.teeth = 18.5: must be a whole number"]),
     "a truth as a number": ("module = 1.0", "module = true", ["module = true: must be a number above 0, in mm"]),
     "not a number": ("module = 1.0", "module = nan", ["module = NaN: must be a number above 0"]),
-    "mistyped key": ("teeth = 18", "theeth = 18", ['theeth = 18: no such key; did you mean "teeth"?', "sun.teeth: missing"]),
-    "unlike any key": ("teeth = 18", "teeth = 18\nweight = 3", ["sun.weight = 3: no such key; known here: ", "face_width"]),
+    "mistyped key": (
+        "teeth = 18",
+        "theeth = 18",
+        ['theeth = 18: no such key; did you mean "teeth"?', "sun.teeth: missing"],
+    ),
+    "unlike any key": (
+        "teeth = 18",
+        "teeth = 18\nweight = 3",
+        ["sun.weight = 3: no such key; known here: ", "face_width"],
+    ),
     "mistyped word": ('fixed = "ring"', 'fixed = "rong"', ['"sun" or "ring" or "carrier"', 'did you mean "ring"?']),
     "mistyped table": ("[sun]", "[sum]", ['did you mean "sun"?', "sun: missing"]),
     "value for a table": ("[ring]", "ring = 3\n[other]", ["ring = 3: must be a table", "other"]),
     "key without bore": ("bore = 8.0", "", ["sun: a key or a chamfer is given without a bore"]),
     "empty name": ('name = "Pump drive stage"', 'name = ""', ['name = "": must be a text']),
-    "two mistakes": ("teeth = 18\nface_width = 12.0", "teeth = 1\nface_width = -1", ["2 mistakes", "sun.teeth", "sun.face_width"]),
+    "two mistakes": (
+        "teeth = 18\nface_width = 12.0",
+        "teeth = 1\nface_width = -1",
+        ["2 mistakes", "sun.teeth", "sun.face_width"],
+    ),
     "other machine": ('machine = "planetary"', 'machine = "planetry"', ['did you mean "planetary"?', '"pin-wheel"']),
     "no machine": ('machine = "planetary"', "", ["machine: missing", '"involute-pair"']),
     "machine a number": ('machine = "planetary"', "machine = 3", ["machine = 3: must be"]),
@@ -146,7 +160,12 @@ def test_a_name_must_suit_every_file(tmp_path):
 @pytest.mark.parametrize(
     ("old", "new", "table", "words"),
     [
-        ("bore = 8.0             # a 2 x 2 key, ISO/R 773\nkey = true", "bore = 5.0\nkey = true", "sun", "no standard key"),
+        (
+            "bore = 8.0             # a 2 x 2 key, ISO/R 773\nkey = true",
+            "bore = 5.0\nkey = true",
+            "sun",
+            "no standard key",
+        ),
         ("rim_diameter = 86.0", "rim_diameter = 60.0", "ring", "rim"),
         ("planets = 3", "planets = 4", "", "4 equally spaced planets"),
         ("planets = 3", "planets = 5", "", "planets"),

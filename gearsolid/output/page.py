@@ -14,7 +14,7 @@ from gearsolid.output.made import Made
 from gearsolid.output.plot import line_plot
 from gearsolid.output.report import FileRecord, PartRecord, Report, tightest_first
 from gearsolid.output.views import close_view, machine_view, part_view, shapes, windows
-from gearsolid.output.wording import VERDICTS, finding, number, ratio_text
+from gearsolid.output.wording import VERDICTS, angle_text, finding, number, ratio_text
 from gearsolid.pairs.machine import Machine
 
 # Pieces named one by one up to this number.
@@ -49,7 +49,7 @@ def page(report: Report, machine: Machine, result: RollResult, made: Sequence[Ma
         ring_sentence=_ring_sentence(worst),
         close_pitch=close_view(engagement, worst, pitch_window),
         close_gap=close_view(engagement, worst, gap_window),
-        close_caption=f"{escape(worst.name_a)} with {escape(worst.name_b)} at input angle {worst.input_angle:.3f}°",
+        close_caption=f"{escape(_pair(worst))} at input angle {angle_text(worst.input_angle)}",
         contact_rows="\n".join(_contact_row(c) for c in tightest_first(result)),
         plots="\n".join(_plots(*group) for group in _alike(tightest_first(result))),
         parts="\n".join(_part(m, r, k) for k, (m, r) in enumerate(zip(made, report.parts, strict=True))),
@@ -93,15 +93,17 @@ def _contact_row(c: Contact) -> str:
         f'<td class="n">{c.clearance:.4f}</td><td class="n">{number(c.play, 4)}</td>'
         f'<td class="n">{number(c.play_angle, 4)}</td><td class="n">{number(c.contact_ratio, 3)}</td>'
         f'<td class="n">{number(c.transmission_error, 5)}</td>'
-        f"<td>{c.input_angle:.3f}°, {c.roles[0]} on {c.roles[1]}</td></tr>"
+        f"<td>{angle_text(c.input_angle)}, {c.roles[0]} on {c.roles[1]}</td></tr>"
     )
 
 
 def _alike(contacts: Iterable[Contact]) -> list[list[Contact]]:
     """Contacts whose curves are the same but for the input angle they start at, as of equal planets."""
-    groups: dict[bytes, list[Contact]] = {}
+    groups: dict[object, list[Contact]] = {}
     for c in contacts:
-        groups.setdefault(np.round(c.clearances, 9).tobytes(), []).append(c)
+        curves = [c.clearances] if c.plays is None else [c.clearances, c.plays]
+        key = (number(c.play, 6), number(c.contact_ratio, 4), *(np.round(y, 6).tobytes() for y in curves))
+        groups.setdefault(key, []).append(c)
     return list(groups.values())
 
 

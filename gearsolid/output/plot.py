@@ -6,7 +6,7 @@ import numpy as np
 
 from gearsolid.curves.curve import Reals
 
-_WIDTH, _HEIGHT = 360.0, 132.0
+_WIDTH, _HEIGHT = 420.0, 140.0
 _LEFT, _RIGHT, _TOP, _BOTTOM = 62.0, 12.0, 24.0, 24.0
 
 

@@ -12,7 +12,7 @@ def finding(contact: Contact) -> str:
     else:
         amount = f"come within {max(contact.clearance, 0.0):.4f} mm"
     return (
-        f"{contact.name_a} and {contact.name_b} {amount} at input angle {contact.input_angle:.3f}°, "
+        f"{contact.name_a} and {contact.name_b} {amount} at input angle {angle_text(contact.input_angle)}, "
         f"at x {contact.place.real:.3f}, y {contact.place.imag:.3f} mm ({contact.roles[0]} on {contact.roles[1]})."
     )
 
@@ -26,3 +26,8 @@ def number(value: float | None, digits: int) -> str:
 def ratio_text(ratio: float) -> str:
     """A ratio of input turns to output turns, as in 29 : 1 or 1 : 7.5; negative when they turn opposite ways."""
     return f"{ratio:.6g} : 1" if abs(ratio) >= 1 else f"{'-' if ratio < 0 else ''}1 : {1 / abs(ratio):.6g}"
+
+
+def angle_text(angle: float) -> str:
+    """An angle from 0 to below 360 degrees."""
+    return f"{round(angle, 3) % 360:.3f}°"
