@@ -4,7 +4,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from gearsolid.contact.closest import Measure, Spots, measure, settle, slide, spots_at
+from gearsolid.contact.closest import Measure, Spots, measure, settle, slide, slide_to_ridge, spots_at
 from gearsolid.contact.view import Touching, View, views
 from gearsolid.curves.curve import Reals
 from gearsolid.curves.field import Integers
@@ -21,6 +21,11 @@ _REFINED = 4
 
 # Lowest spots followed between the sampled poses.
 _FOLLOWED = 6
+
+# Overlaps beyond this share of the pitch length reach the middle of a tooth, where distance has ridges.
+_DEEP = 0.02
+_RIDGE_GRID = 9
+_RIDGE_ROUNDS = 9
 
 
 @dataclass(frozen=True)
@@ -105,16 +110,23 @@ def least_distance(e: Engagement, s: Sweep) -> tuple[Least, Reals]:
             np.minimum.at(per_pose, touching.pose[rows], exact.near.distance)
             best.append((view, spots, exact))
     step = e.period / s.psi.size
-    results = [_between_poses(e, view, spots, exact, step) for view, spots, exact in best]
+    results = [_between_poses(e, view, spots, exact, step, s.pitch_length) for view, spots, exact in best]
     return min(results, key=lambda r: r.distance), per_pose
 
 
-def _between_poses(e: Engagement, view: View, spots: Spots, exact: Measure, step: float) -> Least:
+def _between_poses(e: Engagement, view: View, spots: Spots, exact: Measure, step: float, pitch_length: float) -> Least:
     """Follow the lowest spots to the input angle where the distance is least."""
     # A spot can fall by about its approach speed times half the step between poses.
     floor = exact.near.distance - np.abs(exact.advancing) * step / 2
     chosen = np.argsort(floor, kind="stable")[:_FOLLOWED]
     spots = spots.take(chosen)
+    deep = float(exact.near.distance.min()) < -_DEEP * pitch_length
+    found = _on_ridge(view, spots, step) if deep else _in_dip(view, spots, step)
+    return _report(e, view, found)
+
+
+def _in_dip(view: View, spots: Spots, step: float) -> Spots:
+    """The lowest of the spots after each has followed the slope of its distance to another input angle."""
 
     def settled(psi: Reals) -> tuple[Spots, Measure]:
         return slide(view, replace(spots.repeated(psi.size // spots.psi.size), psi=psi.ravel()))
@@ -122,10 +134,21 @@ def _between_poses(e: Engagement, view: View, spots: Spots, exact: Measure, step
     def advancing(psi: Reals) -> Reals:
         return settled(psi)[1].advancing.reshape(psi.shape)
 
-    psi = settle(advancing, spots.psi - step, spots.psi + step)
-    start, end = (spots, measure(view, spots)), settled(psi)
+    start, end = (spots, measure(view, spots)), settled(settle(advancing, spots.psi - step, spots.psi + step))
     found, at = min((start, end), key=lambda pair: float(pair[1].near.distance.min()))
-    return _report(e, view, found.take(np.array([int(np.argmin(at.near.distance))])))
+    return found.take(np.array([int(np.argmin(at.near.distance))]))
+
+
+def _on_ridge(view: View, spots: Spots, step: float) -> Spots:
+    """The lowest spot by looking at values only, for on a ridge the slopes of its two sides do not tell the way."""
+    low, high = spots.psi - step, spots.psi + step
+    column = np.arange(spots.psi.size)
+    for _ in range(_RIDGE_ROUNDS):
+        psi = np.linspace(low, high, _RIDGE_GRID)
+        many, at = slide_to_ridge(view, replace(spots.repeated(_RIDGE_GRID), psi=psi.ravel()))
+        k = np.argmin(at.near.distance.reshape(psi.shape), axis=0)
+        low, high = psi[np.maximum(k - 1, 0), column], psi[np.minimum(k + 1, _RIDGE_GRID - 1), column]
+    return many.take(np.array([int(np.argmin(at.near.distance))]))
 
 
 def _report(e: Engagement, view: View, spot: Spots) -> Least:

@@ -13,6 +13,13 @@ from gearsolid.curves.field import Integers, Near
 _GRID = np.linspace(0, 1, 9)[:, None]
 _NARROWINGS = 2
 
+# Most Newton steps of a slide; a slide ends when no spot moves by more than this share of a sample.
+_SLIDES = 6
+_STILL = 1e-5
+
+# Step for the second derivative of the distance along the probe, in samples.
+_PROBE = 1e-4
+
 
 @dataclass(frozen=True)
 class Spots:
@@ -72,6 +79,11 @@ class Measure:
     closing: Reals
     advancing: Reals
 
+    def first(self, n: int) -> "Measure":
+        """The first n rows."""
+        near = Near(self.near.distance[:n], self.near.piece[:n], self.near.foot[:n], self.near.outward[:n])
+        return Measure(near, self.along[:n], self.closing[:n], self.advancing[:n])
+
 
 def measure(view: View, spots: Spots) -> Measure:
     """Exact distances and their derivatives at the spots."""
@@ -112,12 +124,42 @@ def settle(slope: Callable[[Reals], Reals], low: Reals, high: Reals) -> Reals:
     return np.where(bracketed, secant, np.where(at_low >= 0, low, high))
 
 
-def slide(view: View, spots: Spots) -> tuple[Spots, Measure]:
-    """Each spot moved to where its distance is least between its limits."""
+def slide_to_ridge(view: View, spots: Spots) -> tuple[Spots, Measure]:
+    """As `slide`, but for deep overlaps: there the distance is least on a ridge between two flanks, not at a smooth dip."""
 
     def along(place: Reals) -> Reals:
         many = replace(spots.repeated(_GRID.size), place=place.ravel())
         return measure(view, many).along.reshape(place.shape)
 
     spots = replace(spots, place=settle(along, spots.low, spots.high))
+    return spots, measure(view, spots)
+
+
+def newton(view: View, spots: Spots) -> tuple[Spots, Measure, Reals]:
+    """One Newton step of each spot towards its least distance, within its limits and by one sample at most.
+
+    Returns:
+        The moved spots, the measure before the step, and the fall of the distance the step should bring [mm].
+    """
+    ahead = np.where(spots.place + _PROBE <= spots.high, _PROBE, -_PROBE)
+    pair = replace(spots.repeated(2), place=np.append(spots.place, spots.place + ahead))
+    both = measure(view, pair)
+    n = spots.place.size
+    here, there = both.along[:n], both.along[n:]
+    bend = (there - here) / ahead
+    curved = bend > 0
+    step = np.where(curved, -here / np.where(curved, bend, 1.0), -np.sign(here))
+    place = np.clip(spots.place + np.clip(step, -1.0, 1.0), spots.low, spots.high)
+    moved = place - spots.place
+    fall = -(here + bend * moved / 2) * moved
+    return replace(spots, place=place), both.first(n), fall
+
+
+def slide(view: View, spots: Spots) -> tuple[Spots, Measure]:
+    """Each spot moved to where its distance is least between its limits."""
+    for _ in range(_SLIDES):
+        before = spots.place
+        spots, _, _ = newton(view, spots)
+        if np.all(np.abs(spots.place - before) < _STILL):
+            break
     return spots, measure(view, spots)

@@ -6,7 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from gearsolid.contact.clearance import Sweep
-from gearsolid.contact.closest import Spots, around, slide, spots_at
+from gearsolid.contact.closest import Spots, around, newton, spots_at
 from gearsolid.contact.view import Touching, View
 from gearsolid.curves.curve import Reals
 from gearsolid.curves.field import Integers
@@ -17,7 +17,7 @@ _LEVER = 0.02
 # Overlapping parts have no position to turn from; their negative play is that of the contacts that resist best.
 _STRONG_LEVER = 0.5
 
-_ROUNDS = 6
+_ROUNDS = 8
 _WITNESSES = 3
 _CHECKS = 4
 _SETTLED = 1e-9
@@ -95,12 +95,13 @@ def _stopped(view: View, spots: Spots, way: int, lever: float) -> tuple[Spots, N
         The spots with their turns, and which of them did come to touch.
     """
     for _ in range(_ROUNDS):
-        spots, exact = slide(view, spots)
-        gap, arm = exact.near.distance, np.maximum(-way * exact.closing, lever)
-        touching = np.abs(gap) <= _SETTLED * arm
+        spots, exact, fall = newton(view, spots)
+        arm = np.maximum(-way * exact.closing, lever)
+        touching = np.abs(exact.near.distance) + np.abs(fall) <= _SETTLED * arm
         if touching.all():
             break
-        spots = around(view, replace(spots, extra=spots.extra + way * gap / arm), 2)
+        turned = replace(spots, extra=spots.extra + way * (exact.near.distance - fall) / arm)
+        spots = around(view, turned, 2)
     return spots, touching
 
 
