@@ -38,6 +38,11 @@ class InvoluteMember(InvoluteNumbers, ABC):
         """Radius at which fillet and involute meet [mm] (half the root form diameter)."""
 
     @property
+    def undercut(self) -> float:
+        """How far the tool's straight flank reaches below the base tangent point [mm]; 0 when nothing is undercut."""
+        return 0.0
+
+    @property
     @abstractmethod
     def _fillet(self) -> Curve:
         """From the root circle to the involute, on the side of the tooth that is travelled first."""

@@ -137,6 +137,22 @@ class InvolutePair:
         return float(np.hypot(first, self.gear.base_radius)), float(np.hypot(offset - last, self.mate.base_radius))
 
     @property
+    def needed_shortening(self) -> tuple[float, float]:
+        """By how much the tips of gear and mate must be shortened [mm] to stay off the fillets of the other; 0 if not.
+
+        A full-depth ring often runs into the fillet of its planet, for it reaches deeper than the planet's rack. The
+        fillet of an undercut tooth stands back and limits a gear nothing, a ring to the planet's base tangent point.
+        """
+        gear, mate, free = self.gear, self.mate, float("inf")
+        first, last = reach(gear.form_radius, gear.base_radius), self._reach_on_gear(mate.form_radius)
+        first = first if not gear.undercut else 0.0 if mate.hand < 0 else -free
+        last = last if not mate.undercut else free
+        offset = self._signed_distance * float(np.sin(self.working_angle))
+        ours = gear.tip_radius - float(np.hypot(max(last, 0.0), gear.base_radius))
+        theirs = mate.hand * (mate.tip_radius - float(np.hypot(offset - first, mate.base_radius)))
+        return max(0.0, ours), max(0.0, theirs)
+
+    @property
     def play(self) -> float:
         """Play as a transverse arc of the working circles [mm]; negative when the teeth are too thick."""
         ours, theirs = self.working_radii

@@ -121,6 +121,7 @@ class Generation:
 
     @property
     def margins(self) -> RingMargins:
+        """Margins of the cutter in the ring."""
         return ring_margins(
             teeth=(self.pinion.teeth, self.ring.teeth),
             tip=(self.pinion.tip_radius, self.ring.tip_radius),
@@ -131,6 +132,7 @@ class Generation:
 
     @property
     def motion(self) -> CircleOnCircle:
+        """The working circle of the cutter rolling in that of the ring."""
         cosine = float(np.cos(self.working))
         return CircleOnCircle(self.ring.base_radius / cosine, -self.pinion.base_radius / cosine)
 
@@ -154,12 +156,14 @@ class Generation:
 
     @property
     def flank(self) -> Envelope:
+        """Envelope of the cutter's involute, from the ring's fillet to its tip circle."""
         base = LineOnCircle(self.pinion.base_radius)
         involute = Trace(base, 0, -self.tip_reach, -max(self.foot_reach, 0.0))
         return Envelope(Turned(involute, self.flank_turn), self.motion, -1)
 
     @property
     def fillet(self) -> Envelope:
+        """Envelope of the rounding at the cutter's tip, from the ring's root circle to its involute."""
         first, last = float(np.angle(self.corner_centre)), self.tip_reach / self.pinion.base_radius - np.pi / 2
         corner = Arc(self.corner_centre, self.rounding, first, last)
         return Envelope(Turned(corner, self.flank_turn), self.motion, -1)

@@ -54,9 +54,17 @@ class BasicRack:
         return float(sharp - self.root_radius * np.tan((np.pi / 2 - a) / 2))
 
     def full_root_radius(self, pressure_angle_deg: float) -> float:
-        """Largest root radius rfP* [-], which leaves no flat at the tool's tip, at a pressure angle [deg]. ISO 53."""
+        """Root radius [-] that leaves no flat at the tool's tip, at a pressure angle [deg]. ISO 53."""
         a = np.radians(pressure_angle_deg)
         return float((np.pi / 4 - self.dedendum * np.tan(a)) / np.tan((np.pi / 2 - a) / 2))
+
+    def largest_root_radius(self, pressure_angle_deg: float) -> float:
+        """Largest root radius rfP* [-] at a pressure angle [deg]. ISO 53.
+
+        Beyond it the straight flank ends above the reach of the mate's tip, or the tool's tip has no flat left.
+        """
+        fillet_depth = self.clearance / (1 - float(np.sin(np.radians(pressure_angle_deg))))
+        return min(fillet_depth, self.full_root_radius(pressure_angle_deg))
 
     def check(self, pressure_angle_deg: float) -> None:
         """Refuse a rack whose tool cannot exist at a pressure angle [deg].

@@ -91,9 +91,9 @@ def test_straight_dedendum(inputs, expected):
     assert not misses(expected, {"hFfP": PROFILES[inputs["profile"]].straight_dedendum(20)})
 
 
-@pytest.mark.parametrize(("inputs", "expected"), cases("involute_racks", "full root radius"))
-def test_full_root_radius(inputs, expected):
-    assert not misses(expected, {"rfP_max": BasicRack(1, inputs["dedendum"], 0.3).full_root_radius(20)})
+@pytest.mark.parametrize(("inputs", "expected"), cases("involute_racks", "largest root radius"))
+def test_largest_root_radius(inputs, expected):
+    assert not misses(expected, {"rfP_max": PROFILES[inputs["profile"]].largest_root_radius(20)})
 
 
 @pytest.mark.parametrize(("inputs", "expected"), cases("involute_racks", "rack drive"))
@@ -406,7 +406,7 @@ def test_iso1328_classes_stay_close_to_the_grades_of_1995(inputs, expected):
 
 FILES = {
     "involute_function": {"involute function"},
-    "involute_racks": {"basic rack", "straight dedendum", "full root radius", "rack drive"},
+    "involute_racks": {"basic rack", "straight dedendum", "largest root radius", "rack drive"},
     "involute_pairs": {"external pair", "shifts at a distance", "inch pair", "overlap", "crossed addendum"},
     "involute_rings": {"ring pair", "ring cut", "least ring teeth"},
     "involute_inspection": {"span", "pins", "rack pin", "chord", "tip land"},

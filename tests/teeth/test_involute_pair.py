@@ -1,7 +1,11 @@
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from hypothesis import assume, given, settings
 from hypothesis import strategies as st
+from involute_shapes import polygon
+from shapely.affinity import rotate, translate
 
 from gearsolid.errors import DesignError
 from gearsolid.teeth.internal import InternalGear
@@ -61,6 +65,44 @@ def test_drawn_flanks_cover_the_contact_path(pair):
         assert drawn[0] <= lengths[0] + 1e-9
         assert lengths[1] <= drawn[1] + 1e-9
     assert ends[0] < ends[1]
+
+
+def overlap(pair, turn):
+    """Area [mm2] that both drawn members claim; a gear tooth is turned from the line of centres, the mate too."""
+    gear, mate = (polygon(m.outline, 200) for m in (pair.gear, pair.mate))
+    step = np.pi / pair.mate.teeth
+    follow = turn * pair.gear.teeth / pair.mate.teeth
+    if pair.mate.hand > 0:
+        placed = rotate(gear, turn, (0, 0), use_radians=True)
+        other = rotate(mate, np.pi + step - follow, (0, 0), use_radians=True)
+        return placed.intersection(translate(other, pair.centre_distance)).area
+    placed = translate(rotate(gear, turn, (0, 0), use_radians=True), pair.centre_distance)
+    return placed.difference(rotate(mate, step + follow, (0, 0), use_radians=True)).area
+
+
+def test_drawn_members_roll_in_each_other_without_overlap(pair):
+    """With tips off the other's fillets, nothing overlaps at the distance without play, and everywhere 2 % closer."""
+    ours, theirs = pair.needed_shortening
+    free = InvolutePair(replace(pair.gear, tip_shortening=ours), replace(pair.mate, tip_shortening=theirs))
+    assert free.needed_shortening == pytest.approx((0, 0), abs=1e-12)
+    turns = np.linspace(0, 2 * np.pi / pair.gear.teeth, 5)
+    assert max(overlap(free, turn) for turn in turns) < 1e-4 * pair.gear.module**2
+    closer = replace(free, distance=pair.centre_distance - pair.mate.hand * 0.02 * pair.gear.module)
+    assert min(overlap(closer, turn) for turn in turns) > 3e-3 * pair.gear.module**2
+
+
+def test_full_depth_ring_runs_into_the_fillet_of_its_planet():
+    """The overlap the shortening takes away is really there without it."""
+    pair = PAIRS["ring"]
+    assert pair.needed_shortening[0] == 0
+    assert pair.needed_shortening[1] > 0.1
+    assert max(overlap(pair, turn) for turn in np.linspace(0, 0.2, 5)) > 1e-3
+
+
+def test_undercut_limits_no_mate():
+    pair = InvolutePair(InvoluteGear(9, 2), InvoluteGear(40, 2))
+    assert pair.needed_shortening == (0, 0)
+    assert max(overlap(pair, turn) for turn in np.linspace(0, 0.7, 9)) < 4e-4
 
 
 def test_contact_ratio_counts_only_flanks_that_exist():
