@@ -8,7 +8,7 @@ from typing import ClassVar
 import numpy as np
 
 from gearsolid.curves.crossing import crossings
-from gearsolid.curves.curve import Curve, Mirrored, Reals, Section, Turned
+from gearsolid.curves.curve import Curve, Mirrored, Reals, Turned
 from gearsolid.curves.outline import Outline, Piece
 from gearsolid.curves.parallel import Parallel
 from gearsolid.curves.primitives import Arc, Segment
@@ -191,24 +191,16 @@ class PinGenerated:
         ray = Segment(0.5 * radii.min() * turn, 1.5 * radii.max() * turn)
         return float(crossings(flank, ray)[0, 0])
 
-    @property
+    @cached_property
     def _half(self) -> Curve:
         """Flank from the bottom of the valley on the +x axis to the end of the pitch."""
-        flank = Section(Parallel(self.path.curve(0.0, pi), self.offset), 0.0, self._crest)
-        return Turned(flank, self._flank_turn)
-
-    @property
-    def _flank_turn(self) -> complex:
-        return complex(np.exp(1j * self.hand * np.radians(self.angular_deg)))
+        flank = Parallel(self.path.curve(0.0, self._crest), self.offset)
+        turn = self.hand * np.radians(self.angular_deg)
+        return Turned(flank, complex(np.exp(1j * turn))) if turn else flank
 
     @cached_property
     def outline(self) -> Outline:
         """One pitch, a valley centred on the +x axis; clockwise for a ring."""
-        if self.angular_deg == 0:
-            valley = Parallel(self.path.curve(-self._crest, self._crest), self.offset)
-            return Outline((Piece(valley, "flank"),), self.lobes)
         turn = self.hand * np.radians(self.angular_deg)
-        bottom = Arc(0, self.root_radius, -turn, turn)
-        return Outline(
-            (Piece(Mirrored(self._half), "flank"), Piece(bottom, "root"), Piece(self._half, "flank")), self.lobes
-        )
+        bottom = (Piece(Arc(0, self.root_radius, -turn, turn), "root"),) if turn else ()
+        return Outline((Piece(Mirrored(self._half), "flank"), *bottom, Piece(self._half, "flank")), self.lobes)
