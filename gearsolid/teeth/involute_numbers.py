@@ -1,6 +1,7 @@
 """Circles and tooth thicknesses of involute members, external and internal, from their numbers alone."""
 
 from dataclasses import dataclass
+from functools import cached_property
 from typing import ClassVar
 
 import numpy as np
@@ -65,17 +66,17 @@ class InvoluteNumbers:
         """Length along the pitch line in the transverse section per length in the normal section [-]."""
         return float(1 / np.cos(np.radians(self.helix_angle_deg)))
 
-    @property
+    @cached_property
     def transverse_angle(self) -> float:
         """Pressure angle at the reference circle in the transverse section [rad]."""
         return transverse_angle(float(np.radians(self.pressure_angle_deg)), float(np.radians(self.helix_angle_deg)))
 
-    @property
+    @cached_property
     def reference_radius(self) -> float:
         """[mm]."""
         return self.teeth * self.module * self._stretch / 2
 
-    @property
+    @cached_property
     def base_radius(self) -> float:
         """[mm]."""
         return self.reference_radius * float(np.cos(self.transverse_angle))

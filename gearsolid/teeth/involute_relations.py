@@ -29,7 +29,7 @@ def inverse_inv(value: Reals | float) -> Reals:
     if np.any(v < 0) or not np.all(np.isfinite(v)):
         raise DesignError(f"the involute function of a pressure angle is {np.min(v):.6g} rad; it must be at least 0")
     u = v + np.cbrt(3 * v)
-    for _ in range(8):
+    for _ in range(5):
         u = u - np.where(u > 0, (u - np.arctan(u) - v) * (1 + u**2) / np.where(u > 0, u, 1.0) ** 2, 0.0)
     return np.asarray(np.arctan(u))
 

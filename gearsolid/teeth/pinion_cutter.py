@@ -89,7 +89,7 @@ class Generation:
         shifts = self.cutter.profile_shift + self.ring.profile_shift
         return working_angle(self.cutter.teeth, -self.ring.teeth, shifts, angle, helix)
 
-    @property
+    @cached_property
     def distance(self) -> float:
         """Distance of the two axes [mm]."""
         return (self.ring.base_radius - self.pinion.base_radius) / float(np.cos(self.working))
@@ -119,7 +119,7 @@ class Generation:
         """Length of the ring's base tangent where its involute ends [mm]."""
         return self.offset + self.tip_reach
 
-    @property
+    @cached_property
     def margins(self) -> RingMargins:
         """Margins of the cutter in the ring."""
         return ring_margins(
