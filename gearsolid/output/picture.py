@@ -4,6 +4,7 @@ Paths are written in the drawing's own sense, x to the right and y up; the pictu
 """
 
 from dataclasses import dataclass
+from math import ceil, log10
 
 import numpy as np
 
@@ -21,8 +22,9 @@ class _Cubics:
 
     control: Points
 
-    def data(self, factor: complex) -> str:
-        return "".join(f"C{_xy(b)} {_xy(c)} {_xy(d)}" for b, c, d in (self.control[:, 1:] * factor).tolist())
+    def data(self, factor: complex, digits: int) -> str:
+        points = (self.control[:, 1:] * factor).tolist()
+        return "".join("C" + " ".join(_xy(z, digits) for z in three) for three in points)
 
 
 @dataclass(frozen=True)
@@ -33,9 +35,10 @@ class _ArcRun:
     left: bool
     ends: Points
 
-    def data(self, factor: complex) -> str:
-        head = f"A{_number(self.radius)} {_number(self.radius)} 0 0 {int(self.left)} "
-        return "".join(head + _xy(z) for z in (self.ends * factor).tolist())
+    def data(self, factor: complex, digits: int) -> str:
+        radius = _number(self.radius, digits)
+        head = f"A{radius} {radius} 0 0 {int(self.left)} "
+        return "".join(head + _xy(z, digits) for z in (self.ends * factor).tolist())
 
 
 def path(outline: Outline, tol: float = 1e-4) -> str:
@@ -51,10 +54,12 @@ def path(outline: Outline, tol: float = 1e-4) -> str:
     runs = [run for piece in outline.pieces for run in _runs(piece.curve, tol)]
     start = outline.pieces[0].curve.start
     factors = [outline.step**k for k in range(outline.order)]
-    pitches = ["".join(run.data(f) for run in runs) for f in factors]
+    # One decimal more than the tolerance needs.
+    digits = max(0, ceil(-log10(tol))) + 1
+    pitches = ["".join(run.data(f, digits) for run in runs) for f in factors]
     if outline.is_chain:
-        return f"M{_xy(start)}{''.join(pitches)}Z"
-    return "".join(f"M{_xy(start * f)}{pitch}Z" for f, pitch in zip(factors, pitches, strict=True))
+        return f"M{_xy(start, digits)}{''.join(pitches)}Z"
+    return "".join(f"M{_xy(start * f, digits)}{pitch}Z" for f, pitch in zip(factors, pitches, strict=True))
 
 
 def _runs(curve: Curve, tol: float) -> list[_Cubics | _ArcRun]:
@@ -82,18 +87,22 @@ def _cubics(curve: Curve, first: float, last: float, tol: float) -> _Cubics:
 
 
 def _miss(curve: Curve, t: Reals, control: Points) -> float:
-    """Largest distance between curve and cubics at quarter points, measured at equal parameters (never too small)."""
+    """Largest distance between curve and cubics, estimated at quarter points.
+
+    What lies along the curve is only another pace and counts as far as the curve may bend within it.
+    """
     u = np.array([0.25, 0.5, 0.75])
     weights = np.stack([(1 - u) ** 3, 3 * u * (1 - u) ** 2, 3 * u**2 * (1 - u), u**3], axis=1)
-    drawn = control @ weights.T
-    true = curve.point(t[:-1, None] + np.diff(t)[:, None] * u)
-    return float(np.max(np.abs(drawn - true)))
+    at = t[:-1, None] + np.diff(t)[:, None] * u
+    gap = (control @ weights.T - curve.point(at)) / curve.tangent(at)
+    length = np.abs(control[:, -1:] - control[:, :1])
+    return float(np.max(np.abs(gap.imag) + gap.real**2 / np.maximum(length, 1e-12)))
 
 
-def _xy(z: complex) -> str:
-    return f"{_number(z.real)} {_number(z.imag)}"
+def _xy(z: complex, digits: int) -> str:
+    return f"{_number(z.real, digits)} {_number(z.imag, digits)}"
 
 
-def _number(x: float) -> str:
-    text = f"{x:.5f}".rstrip("0").rstrip(".")
+def _number(x: float, digits: int) -> str:
+    text = f"{x:.{digits}f}".rstrip("0").rstrip(".")
     return "0" if text in ("-0", "") else text

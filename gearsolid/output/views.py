@@ -10,7 +10,7 @@ from gearsolid.contact.result import Contact
 from gearsolid.curves.loops import disc
 from gearsolid.curves.outline import Outline
 from gearsolid.output.cut import material
-from gearsolid.output.made import Made
+from gearsolid.output.made import Made, distinct
 from gearsolid.output.picture import path
 from gearsolid.pairs.engagement import Engagement
 from gearsolid.pairs.machine import Machine
@@ -23,10 +23,39 @@ _FRONT = 230.0
 _SECTION_MOST = 150.0
 _MARGIN, _GAP, _DIMENSIONS = 18.0, 74.0, 92.0
 
+# A picture on its own: light colours that also stand on a dark page, flanks as true as a large screen shows them.
+_PICTURE_TOL = 0.01
+_PICTURE_STYLE = (
+    ".face,.boss{fill:var(--tint);fill-rule:evenodd;stroke:#24313a;stroke-width:.12}.boss{fill-opacity:.6}"
+    ".edge,.pitch,.place{fill:none;stroke:#24313a;stroke-width:.1}.pitch{stroke-dasharray:1.2 .4 .3 .4}"
+    ".mark{fill:#fff;stroke:#24313a;stroke-width:.1}.place{stroke:#ad3b2b;stroke-width:.3}"
+)
 
-def shapes(made: Sequence[Made]) -> str:
-    """Definitions that every other picture on the page refers to: one group a distinct part, `shape-0` and on."""
-    return "".join(f'<g id="shape-{k}">{_shape(m.body)}</g>' for k, m in enumerate(made))
+
+def shapes(made: Sequence[Made], tol: float = 1e-4) -> str:
+    """Definitions that the other pictures refer to: one group a distinct part, `shape-0` and on.
+
+    Args:
+        made: the distinct parts.
+        tol: largest distance between a drawn and a true flank [mm].
+    """
+    return "".join(f'<g id="shape-{k}">{_shape(m.body, tol)}</g>' for k, m in enumerate(made))
+
+
+def picture(machine: Machine, contact: Contact) -> str:
+    """The front view as an SVG file of its own, standing where a contact is tightest.
+
+    Args:
+        machine: the machine.
+        contact: the contact to ring.
+    """
+    made = distinct(machine.parts)
+    view = machine_view(machine, made, contact)
+    head, rest = view.split(">", 1)
+    return (
+        f'{head} xmlns="http://www.w3.org/2000/svg" width="640"><style>{_PICTURE_STYLE}</style>'
+        f"<defs>{shapes(made, _PICTURE_TOL)}</defs>{rest}\n"
+    )
 
 
 def machine_view(machine: Machine, made: Sequence[Made], contact: Contact) -> str:
@@ -116,10 +145,10 @@ def part_view(made: Made, index: int) -> str:
     return "".join(bits) + "</svg>"
 
 
-def _shape(body: Body) -> str:
-    face = "".join(path(o) for o in _boundaries(body))
+def _shape(body: Body, tol: float) -> str:
+    face = "".join(path(o, tol) for o in _boundaries(body))
     chamfer = f'<path class="edge" d="{path(body.bore.mouth)}"/>' if body.bore and body.bore.chamfer else ""
-    bosses = "".join(f'<path class="boss" d="{path(b.outline)}"/>' for b in body.bosses)
+    bosses = "".join(f'<path class="boss" d="{path(b.outline, tol)}"/>' for b in body.bosses)
     return f'<path class="face" d="{face}"/>{chamfer}{bosses}'
 
 

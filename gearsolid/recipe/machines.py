@@ -7,13 +7,16 @@ from typing import Literal, Protocol, Self
 from pydantic import model_validator
 
 from gearsolid.pairs.blank import Blank, body_of
+from gearsolid.pairs.eccentric_shaft import EccentricShaft
 from gearsolid.pairs.machine import Machine
 from gearsolid.pairs.planetary import PlanetaryStage
 from gearsolid.pairs.reducer import OutputRollers, PinWheelReducer, Stack
 from gearsolid.pairs.spur_pair import SpurPair
-from gearsolid.recipe.members import Bored, CycloidalTable, InvoluteTable, RingTable
+from gearsolid.recipe.members import Bored, ClockTable, CycloidalTable, InvoluteTable, RingTable
 from gearsolid.recipe.table import Table, entry, of_table
 from gearsolid.shop.bore import Bore
+from gearsolid.teeth.clock import cycloidal_pair, ogival_pair
+from gearsolid.teeth.clock_pair import ClockPair, Drives
 from gearsolid.teeth.involute_relations import centre_distance
 from gearsolid.teeth.member import Member
 from gearsolid.teeth.pinwheel import CycloidDisc, PinRing
@@ -104,7 +107,7 @@ class RingPair(_InvoluteStage):
 
 
 class CycloidalPair(MachineTable):
-    """A cycloidal wheel and pinion, as in clocks; the driver turns with the input."""
+    """Two cycloidal members, every proportion chosen freely; the driver turns with the input."""
 
     machine: Literal["cycloidal-pair"] = entry("kind of machine")
     module: float = entry("module of both members", "mm", gt=0)
@@ -128,6 +131,60 @@ class CycloidalPair(MachineTable):
             distance = driver.reference_radius + driven.reference_radius
         names = self.driver.name or "driver", self.driven.name or "driven"
         return SpurPair(driver, driven, distance, driver_blank, driven_blank, *names)
+
+
+class _Clock(MachineTable):
+    module: float = entry("module of both members", "mm", gt=0)
+    wheel: ClockTable = entry("the wheel; it has more teeth than the pinion")
+    pinion: ClockTable = entry("the pinion")
+
+    def _pair(self, members: ClockPair) -> SpurPair:
+        with of_table("wheel"):
+            wheel_blank = self.wheel.blank()
+            body_of(members.wheel.outline, wheel_blank)
+        with of_table("pinion"):
+            pinion_blank = self.pinion.blank()
+            body_of(members.pinion.outline, pinion_blank)
+        sides = (members.wheel, wheel_blank, "wheel"), (members.pinion, pinion_blank, "pinion")
+        (driver, b1, n1), (driven, b2, n2) = sides if members.drives is Drives.WHEEL else sides[::-1]
+        return SpurPair(driver, driven, members.centre_distance, b1, b2, n1, n2)
+
+
+class ExactClockPair(_Clock):
+    """A clock wheel and pinion with exact cycloidal teeth and radial flanks; addenda follow from the counts."""
+
+    machine: Literal["clock-pair"] = entry("kind of machine")
+    drives: Literal["wheel", "pinion"] = entry("the member on the input arbor", default="wheel")
+    play: float = entry(
+        "circumferential play as a share of the pitch, taken from the leaves", default=0.1, ge=0, lt=0.5
+    )
+    early: float = entry(
+        "contact ratio beyond 1 that the driven member's addendum gives, by contact before the line of centres",
+        default=0.05,
+        gt=0,
+        lt=0.5,
+    )
+
+    def build(self) -> SpurPair:
+        members = cycloidal_pair(
+            self.wheel.teeth,
+            self.pinion.teeth,
+            self.module,
+            drives=Drives(self.drives),
+            play=self.play,
+            early=self.early,
+        )
+        return self._pair(members)
+
+
+class OgivalClockPair(_Clock):
+    """A practical clock wheel that drives a pinion: radial flanks and tops of arcs, by the counts alone."""
+
+    machine: Literal["ogival-pair"] = entry("kind of machine")
+    root_fillet: float = entry("radius at the roots of the wheel; a corner when 0", "mm", 0.0, ge=0)
+
+    def build(self) -> SpurPair:
+        return self._pair(ogival_pair(self.wheel.teeth, self.pinion.teeth, self.module, root_fillet=self.root_fillet))
 
 
 class Planetary(_InvoluteStage):
@@ -205,6 +262,18 @@ class FlangeTable(Bored):
     bore: float = entry("diameter of the output shaft hole", "mm", gt=0)
 
 
+class ShaftTable(Table):
+    """The eccentric input shaft: a plain shaft with an eccentric pressed on for each disc."""
+
+    diameter: float = entry("diameter of the shaft; it runs free in the output bore", "mm", gt=0)
+    eccentric_diameter: float = entry("diameter of the eccentrics: the inner seat of their bearings", "mm", gt=0)
+    overhang: float = entry("length of shaft beyond the output flange and beyond the ring", "mm", gt=0)
+
+    def member(self) -> EccentricShaft:
+        """The shaft."""
+        return EccentricShaft(self.diameter, self.eccentric_diameter, self.overhang)
+
+
 class PinWheel(MachineTable):
     """Cycloid discs on an eccentric input shaft, rolling in ring pins; rollers carry the output."""
 
@@ -215,6 +284,7 @@ class PinWheel(MachineTable):
     disc: DiscTable = entry("the cycloid discs")
     rollers: RollerTable = entry("the output rollers")
     output: FlangeTable = entry("the output flange")
+    shaft: ShaftTable | None = entry("the input shaft; left out where it is bought or drawn elsewhere", default=None)
 
     def build(self) -> PinWheelReducer:
         with of_table("ring"):
@@ -234,9 +304,11 @@ class PinWheel(MachineTable):
             rollers = OutputRollers(t.count, t.circle_radius, t.radius, t.hole_clearance)
         with of_table("output"):
             output_bore = self.output.shaft_hole() or Bore(self.output.bore)
+        with of_table("shaft"):
+            shaft = self.shaft.member() if self.shaft else None
         stack = Stack(self.disc.width, self.gap, self.output.flange_width)
         return PinWheelReducer(
-            disc, ring, rollers, stack, disc_bore, output_bore, self.ring.rim_diameter, self.disc.count
+            disc, ring, rollers, stack, disc_bore, output_bore, self.ring.rim_diameter, self.disc.count, shaft
         )
 
 
@@ -244,6 +316,8 @@ MACHINES: dict[str, type[MachineTable]] = {
     "involute-pair": InvolutePair,
     "ring-pair": RingPair,
     "cycloidal-pair": CycloidalPair,
+    "clock-pair": ExactClockPair,
+    "ogival-pair": OgivalClockPair,
     "planetary": Planetary,
     "pin-wheel": PinWheel,
 }

@@ -89,6 +89,17 @@ class RingTable(Table):
         return Blank(self.face_width, rim_diameter=self.rim_diameter)
 
 
+class ClockTable(Bored):
+    """A wheel or pinion of a clock, whose teeth follow from the counts."""
+
+    teeth: int = entry("number of teeth or leaves", ge=6)
+    face_width: float = entry("width of the teeth along the axis", "mm", gt=0)
+
+    def blank(self) -> Blank:
+        """The body before teeth."""
+        return Blank(self.face_width, self.shaft_hole())
+
+
 class CycloidalTable(Bored):
     """A cycloidal member of a clock or instrument."""
 
