@@ -8,10 +8,15 @@ from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 
 import cadquery as cq
-from OCP.BRep import BRep_Builder
+from OCP.BRep import BRep_Builder, BRep_Tool
 from OCP.BRepPrimAPI import BRepPrimAPI_MakePrism
-from OCP.Geom import Geom_Plane
+from OCP.Geom import Geom_BSplineCurve, Geom_BSplineSurface, Geom_Plane, Geom_SurfaceOfLinearExtrusion
 from OCP.gp import gp_Dir, gp_Pnt, gp_Vec
+from OCP.TColgp import TColgp_Array2OfPnt
+from OCP.TColStd import TColStd_Array1OfInteger, TColStd_Array1OfReal
+from OCP.TopAbs import TopAbs_EDGE
+from OCP.TopExp import TopExp_Explorer
+from OCP.TopLoc import TopLoc_Location
 from OCP.TopoDS import TopoDS, TopoDS_Face, TopoDS_Iterator, TopoDS_Shape, TopoDS_Shell, TopoDS_Solid, TopoDS_Wire
 
 from gearsolid.curves.loops import disc
@@ -47,7 +52,47 @@ def _prism_wall(wire: TopoDS_Wire, height: float) -> Wall:
     prism = BRepPrimAPI_MakePrism(wire, gp_Vec(0, 0, height))
     # The sweep of a wire with the material on its left looks into the material.
     faces = tuple(TopoDS.Face_s(f.Reversed()) for f in _parts(prism.Shape()))
+    for face in faces:
+        _settle_surface(face, height)
     return Wall(faces, wire, TopoDS.Wire_s(prism.LastShape()))
+
+
+def _settle_surface(face: TopoDS_Face, height: float) -> None:
+    """Give a face swept from a spline a spline surface of its own, in the parameters of the sweep.
+
+    The kernel integrates over a swept spline without minding its knots: `Shape.Volume(tol=1e-7)` was 1e-4 off.
+    """
+    swept = BRep_Tool.Surface_s(face)
+    if not isinstance(swept, Geom_SurfaceOfLinearExtrusion) or not isinstance(swept.BasisCurve(), Geom_BSplineCurve):
+        return
+    traces = [(e, BRep_Tool.CurveOnSurface_s(e, face, 0.0, 0.0)) for e in map(TopoDS.Edge_s, _edges(face))]
+    builder = BRep_Builder()
+    builder.UpdateFace(
+        face, _ruled(swept.BasisCurve(), gp_Vec(swept.Direction()), height), TopLoc_Location(), _CONFUSION
+    )
+    for edge, trace in traces:
+        builder.UpdateEdge(edge, trace, face, _CONFUSION)
+
+
+def _ruled(curve: Geom_BSplineCurve, direction: gp_Vec, height: float) -> Geom_BSplineSurface:
+    """Spline surface from a curve to its copy `height` against the direction, where the sweep has its far end."""
+    far = direction.Multiplied(-height)
+    poles = TColgp_Array2OfPnt(1, curve.NbPoles(), 1, 2)
+    for k in range(1, curve.NbPoles() + 1):
+        poles.SetValue(k, 1, curve.Pole(k).Translated(far))
+        poles.SetValue(k, 2, curve.Pole(k))
+    knots, counts = TColStd_Array1OfReal(1, 2), TColStd_Array1OfInteger(1, 2)
+    for k, knot in ((1, -height), (2, 0.0)):
+        knots.SetValue(k, knot)
+        counts.SetValue(k, 2)
+    return Geom_BSplineSurface(poles, curve.Knots(), knots, curve.Multiplicities(), counts, curve.Degree(), 1)
+
+
+def _edges(face: TopoDS_Face) -> Iterator[TopoDS_Shape]:
+    explorer = TopExp_Explorer(face, TopAbs_EDGE)
+    while explorer.More():
+        yield explorer.Current()
+        explorer.Next()
 
 
 def bore_wall(bore: Bore, z: float, height: float) -> Wall:

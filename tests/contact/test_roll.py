@@ -27,7 +27,7 @@ def inv(a: float) -> float:
 @pytest.mark.parametrize(
     ("counts", "printed"),
     [((17, 17), 1.515), ((20, 20), 1.557), ((25, 25), 1.612), ((20, 40), 1.635), ((50, 50), 1.755), ((17, 100), 1.684)],
-    ids=lambda v: str(v),
+    ids=str,
 )
 def test_contact_ratio_counted_on_the_flanks_is_the_charted_one(counts, printed):
     """Chart of Elements of Metric Gear Technology for 20 deg, no shift (17/17, 20/20 from memory; others computed)."""
