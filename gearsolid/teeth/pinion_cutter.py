@@ -168,27 +168,40 @@ class Generation:
         corner = Arc(self.corner_centre, self.rounding, first, last)
         return Envelope(Turned(corner, self.flank_turn), self.motion, -1)
 
+    @property
+    def tip_fits(self) -> bool:
+        """Whether the rounding finds room at the cutter's tip."""
+        return self.pinion.tip_radius - self.rounding > self.pinion.base_radius and self.half_land >= 0
+
+    def check_path(self) -> None:
+        """Refuse a cutter whose teeth do not form the whole flank, or form more than the flank.
+
+        Raises:
+            DesignError: says which rule is broken.
+        """
+        teeth = self.pinion.teeth
+        if self.foot_reach < -NO_LAND * self.ring.module:
+            raise DesignError(
+                f"a cutter with {teeth} teeth forms no involute at the ring's tip: it falls {-self.foot_reach:.4g} mm "
+                "short on the base tangent: take more cutter teeth, a larger cutter shift or a shorter ring tip"
+            )
+        if self.margins.trochoid < 0:
+            raise DesignError(
+                f"the tip of a cutter with {teeth} teeth cuts into the tips of a ring with {self.ring.teeth} teeth "
+                f"(margin {self.margins.trochoid:.4g} rad): take fewer cutter teeth or a shorter ring tip"
+            )
+
     def check(self) -> None:
         """Refuse a cutter that cannot form this ring.
 
         Raises:
             DesignError: says which rule is broken.
         """
-        z0, m = self.pinion.teeth, self.ring.module
-        if self.foot_reach < -NO_LAND * m:
+        self.check_path()
+        if not self.tip_fits:
             raise DesignError(
-                f"a cutter with {z0} teeth forms no involute at the ring's tip: it falls {-self.foot_reach:.4g} mm "
-                "short on the base tangent: take more cutter teeth, a larger cutter shift or a shorter ring tip"
-            )
-        if self.pinion.tip_radius - self.rounding <= self.pinion.base_radius or self.half_land < 0:
-            raise DesignError(
-                f"a rounding of {self.rounding:.4g} mm does not fit the tip of a cutter with {z0} teeth of module "
-                f"{m:g} mm: take a smaller rounding, more cutter teeth or a smaller cutter shift"
-            )
-        if self.margins.trochoid < 0:
-            raise DesignError(
-                f"the tip of a cutter with {z0} teeth cuts into the tips of a ring with {self.ring.teeth} teeth "
-                f"(margin {self.margins.trochoid:.4g} rad): take fewer cutter teeth or a shorter ring tip"
+                f"a rounding of {self.rounding:.4g} mm does not fit the tip of a cutter with {self.pinion.teeth} teeth "
+                f"of module {self.ring.module:g} mm: take a smaller rounding, more cutter teeth or a smaller shift"
             )
 
 
@@ -220,17 +233,22 @@ def largest_cutter(ring: InvoluteNumbers) -> PinionCutter:
     """
     axial: PinionCutter | None = None
     for teeth in range(ring.teeth - 2, 2, -1):
-        for rounding in _ROUNDINGS:
-            try:
-                cutter = _cutter_to_depth(ring, PinionCutter(teeth, _enough_shift(ring, teeth), rounding))
-                generation = Generation(ring, cutter)
-                generation.check()
-            except DesignError:
-                continue
-            if generation.margins.trimming >= 0:
-                return cutter
-            axial = axial or cutter
+        try:
+            sharp = _cutter_to_depth(ring, PinionCutter(teeth, _enough_shift(ring, teeth)))
+            path = Generation(ring, sharp)
+            path.check_path()
+        except DesignError:
+            continue
+        rounded = (replace(sharp, tip_rounding=r) for r in _ROUNDINGS)
+        cutter = next((c for c in rounded if Generation(ring, c).tip_fits), None)
+        if cutter is None and axial:
+            # Below a cutter that fits, fewer teeth only have narrower tips.
             break
+        if cutter is None:
+            continue
+        if path.margins.trimming >= 0:
+            return cutter
+        axial = axial or cutter
     if axial:
         return axial
     raise DesignError(
