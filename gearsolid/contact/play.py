@@ -17,7 +17,11 @@ _LEVER = 0.02
 # Overlapping parts have no position to turn from; their negative play is that of the contacts that resist best.
 _STRONG_LEVER = 0.5
 
-_ROUNDS = 8
+_ROUNDS = 10
+
+# Longest Newton step, in pitches of b.
+_STRIDE = 0.1
+
 _WITNESSES = 3
 _CHECKS = 4
 _SETTLED = 1e-9
@@ -94,15 +98,17 @@ def _stopped(view: View, spots: Spots, way: int, lever: float) -> tuple[Spots, N
     Returns:
         The spots with their turns, and which of them did come to touch.
     """
+    start, pitch = spots.extra, (view.probe if view.probe_share else view.target).outline.pitch_angle
     for _ in range(_ROUNDS):
         spots, exact, fall = newton(view, spots)
         arm = np.maximum(-way * exact.closing, lever)
         touching = np.abs(exact.near.distance) + np.abs(fall) <= _SETTLED * arm
         if touching.all():
             break
-        turned = replace(spots, extra=spots.extra + way * (exact.near.distance - fall) / arm)
-        spots = around(view, turned, 2)
-    return spots, touching
+        step = np.clip((exact.near.distance - fall) / arm, -_STRIDE * pitch, _STRIDE * pitch)
+        spots = around(view, replace(spots, extra=spots.extra + way * step), 2)
+    # A spot that has wandered beyond the next tooth says nothing about the first stop.
+    return spots, touching & (np.abs(spots.extra - start) < pitch)
 
 
 def _leaders(touching: Touching, rows: Integers, turn: Reals) -> Integers:
