@@ -41,8 +41,9 @@ def crossings(a: Curve, b: Curve, samples: int = 257) -> Reals:
         Rows (parameter on a, parameter on b) [-], in travel order of a, shape (n, 2).
     """
     ta, tb = _samples(a, samples), _samples(b, samples)
-    guesses, _ = _chord_crossings(ta, a.point(ta), tb, b.point(tb))
-    return _refined(a, b, guesses)
+    za, zb = a.point(ta), b.point(tb)
+    guesses, _ = chord_crossings(ta, za, tb, zb)
+    return _refined(a, b, guesses, _size(za, zb))
 
 
 def self_crossings(curve: Curve, samples: int = 257) -> Reals:
@@ -57,8 +58,8 @@ def self_crossings(curve: Curve, samples: int = 257) -> Reals:
     """
     t = _samples(curve, samples)
     z = curve.point(t)
-    guesses, chords = _chord_crossings(t, z, t, z)
-    found = _refined(curve, curve, guesses[chords[:, 1] > chords[:, 0] + 1])
+    guesses, chords = chord_crossings(t, z, t, z)
+    found = _refined(curve, curve, guesses[chords[:, 1] > chords[:, 0] + 1], _size(z))
     t0, t1 = curve.span
     gap = found[:, 1] - found[:, 0]
     return found[(gap > _LEAST_LOOP * (t1 - t0)) & (gap < (1 - _LEAST_LOOP) * (t1 - t0))]
@@ -163,7 +164,7 @@ def _samples(curve: Curve, samples: int) -> Reals:
     return np.unique([t0 + (t1 - t0) * shares for t0, t1 in smooth_spans(curve)])
 
 
-def _chord_crossings(ta: Reals, za: Points, tb: Reals, zb: Points) -> tuple[Reals, NDArray[np.intp]]:
+def chord_crossings(ta: Reals, za: Points, tb: Reals, zb: Points) -> tuple[Reals, NDArray[np.intp]]:
     """Where the chords of two sampled curves cross: parameters by linear interpolation, and chord numbers."""
     p, along_a = za[:-1, None], np.diff(za)[:, None]
     q, along_b = zb[None, :-1], np.diff(zb)[None, :]
@@ -181,7 +182,12 @@ def _cross(a: Points, b: Points) -> Reals:
     return product
 
 
-def _refined(a: Curve, b: Curve, guesses: Reals) -> Reals:
+def _size(*points: Points) -> float:
+    """Largest coordinate [mm] met on a curve: the measure for rounding."""
+    return float(np.fmax.reduce(np.abs(np.concatenate(points)), initial=0.0))
+
+
+def _refined(a: Curve, b: Curve, guesses: Reals, size: float) -> Reals:
     """Crossings found from guesses by Newton's method within the spans: sorted, each once."""
     ta, tb = guesses.T
     apart = _APART * np.array([a.span[1] - a.span[0], b.span[1] - b.span[0]])
@@ -192,8 +198,7 @@ def _refined(a: Curve, b: Curve, guesses: Reals) -> Reals:
             last = ta, tb
             ta = np.clip(ta - _cross(miss, along_b) / sine, *a.span)
             tb = np.clip(tb - _cross(miss, along_a) / sine, *b.span)
-        za, zb = a.point(ta), b.point(tb)
-        met = np.abs(za - zb) <= _SAME * np.max(np.abs((za, zb)), initial=0.0)
+        met = np.abs(a.point(ta) - b.point(tb)) <= _SAME * size
         # Where two sides come close without crossing the steps stay long.
         met &= (np.abs(ta - last[0]) < apart[0]) & (np.abs(tb - last[1]) < apart[1])
         met &= np.abs(sine) > _LEAST_ANGLE * np.abs(along_a) * np.abs(along_b)

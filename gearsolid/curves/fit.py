@@ -1,30 +1,23 @@
 """B-splines within a stated distance of a curve, with as few poles as that allows."""
 
-from collections.abc import Callable
 from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
-from numpy.polynomial import Polynomial
 from scipy.interpolate import BSpline
 
 from gearsolid.curves.curve import Curve, Points, Reals, Section
+from gearsolid.curves.knots import Spacing, spacing
 from gearsolid.curves.outline import smooth_spans
 from gearsolid.errors import DesignError, ToleranceError
 
 _DEGREES = (3, 5)
-_POLE_BUDGET = 80
+_POLE_BUDGET = 120
 _FIT_PER_POLE = 20
 _CHECK_PER_POLE = 40
 # A peak of the error between two points of the check grid is higher than both by less than this share.
 _GRID_MARGIN = 1.01
 _FOOT_STEPS = 8
-# A curve that would stand still less than this share of its span beyond an end is written by a new parameter there.
-_CUSP_REACH = 0.03
-_ASIDE = 1e-3
-_BESIDE_ENDS = np.array([[0.0, 0.0], [_ASIDE, -_ASIDE]])
-# Share of the grading that knots take over from that parameter: measured to give the fewest poles at 0.1 um.
-_GRADING = 0.5
 # The end directions of a spline may lean from the curve's by this much [rad].
 _END_LEAN = 0.05
 
@@ -120,60 +113,43 @@ def _fit_span(curve: Curve, tol: float) -> Spline:
         raise DesignError(
             f"the curve has no finite point on part of its span {t0:g} to {t1:g}; trim it to the part that exists"
         )
-    warp = _parameter(curve)
-    # At a corner the end itself belongs to both sides.
-    directions = curve.tangent(np.array([t0, t1]) + 1e-9 * (t1 - t0) * np.array([1.0, -1.0]))
-    best = np.inf
-    for count in range(2, _POLE_BUDGET + 1):
-        for degree in sorted({min(d, count - 1) for d in _DEGREES}):
-            trial = _least_squares(curve, warp, degree, count)
-            shares = _graded(warp, np.linspace(0, 1, _CHECK_PER_POLE * count))
-            gaps = distance(trial, curve.point(t0 + (t1 - t0) * shares), warp(shares))
-            error = _GRID_MARGIN * float(np.max(gaps))
-            lean = np.max(np.abs(np.angle(trial.tangent(np.array([0.0, 1.0])) / directions)))
-            if error <= tol and lean <= _END_LEAN:
-                return replace(trial, error=error)
-            best = min(best, error)
+    spacings = {degree: spacing(curve, degree) for degree in _DEGREES}
+    best, tried, count = np.inf, 1, 2
+    while count <= _POLE_BUDGET:
+        spline = _best(curve, spacings, count)
+        if spline.error <= tol:
+            skipped = (_best(curve, spacings, fewer) for fewer in range(tried + 1, count))
+            return next((s for s in skipped if s.error <= tol), spline)
+        best, tried, count = min(best, spline.error), count, count + max(1, count // 8)
     raise ToleranceError(
         f"the best B-spline with up to {_POLE_BUDGET} poles is {best:.3g} mm from the curve, not the {tol:.3g} mm "
         "asked; ask for a larger tolerance, or cut the curve into shorter spans"
     )
 
 
-def _least_squares(curve: Curve, warp: Callable[[Reals], Reals], degree: int, count: int) -> Spline:
+def _best(curve: Curve, spacings: dict[int, Spacing], count: int) -> Spline:
+    """The better of the two degrees with `count` poles; its error is infinite when neither sets out along the curve."""
+    t0, t1 = curve.span
+    # At a corner the end itself belongs to both sides.
+    directions = curve.tangent(np.array([t0, t1]) + 1e-9 * (t1 - t0) * np.array([1.0, -1.0]))
+    trials = []
+    for degree, places in spacings.items():
+        trial = _least_squares(curve, places, min(degree, count - 1), count)
+        lean = np.max(np.abs(np.angle(trial.tangent(np.array([0.0, 1.0])) / directions)))
+        shares = places.spread(_CHECK_PER_POLE * count)
+        gaps = distance(trial, curve.point(t0 + (t1 - t0) * shares), places.parameter(shares))
+        trials.append(replace(trial, error=_GRID_MARGIN * float(np.max(gaps)) if lean <= _END_LEAN else np.inf))
+    return min(trials, key=lambda s: s.error)
+
+
+def _least_squares(curve: Curve, places: Spacing, degree: int, count: int) -> Spline:
     """The spline of `count` poles nearest the curve's points at equal parameters, ends kept exactly."""
     t0, t1 = curve.span
-    inner = warp(_graded(warp, np.linspace(0, 1, count - degree + 1)))[1:-1]
-    knots = np.concatenate((np.zeros(degree + 1), inner, np.ones(degree + 1)))
-    shares = _graded(warp, np.linspace(0, 1, _FIT_PER_POLE * count))
-    points = curve.point(t0 + (t1 - t0) * shares)
-    matrix = BSpline.design_matrix(np.clip(warp(shares), 0.0, 1.0), knots, degree).toarray()
-    ends = np.array([points[0], points[-1]])
-    free = np.linalg.lstsq(matrix[:, 1:-1], points - matrix[:, [0, -1]] @ ends, rcond=None)[0]
-    poles = np.concatenate((ends[:1], free, ends[1:]))
+    knots = places.knots(degree, count - degree)
+    shares = places.spread(_FIT_PER_POLE * count)
+    matrix = BSpline.design_matrix(places.parameter(shares), knots, degree).toarray()
+    ends = np.array([curve.start, curve.end])
+    rest = curve.point(t0 + (t1 - t0) * shares) - matrix[:, [0, -1]] @ ends
+    free = np.linalg.lstsq(matrix[:, 1:-1], np.stack((rest.real, rest.imag), axis=-1), rcond=None)[0]
+    poles = np.concatenate((ends[:1], free @ (1, 1j), ends[1:]))
     return Spline(degree, tuple(knots.tolist()), tuple(poles.tolist()))
-
-
-def _parameter(curve: Curve) -> Callable[[Reals], Reals]:
-    """Map from the share of the span to the spline's parameter, both 0 to 1.
-
-    The speed of a curve grows evenly away from a cusp, so the parameter is made to grow at that rate: the spline's own
-    speed is then even. `lag` is the share of the span by which the cusp lies outside.
-    """
-    t0, t1 = curve.span
-    at_end, inside = np.abs(curve.derivative(np.array([[t0, t1], [t0, t1]]) + (t1 - t0) * _BESIDE_ENDS))
-    with np.errstate(divide="ignore", invalid="ignore"):
-        lags = _ASIDE * at_end / np.maximum(inside - at_end, 0.0)
-    rate = Polynomial([1.0])
-    if lags[0] < _CUSP_REACH:
-        rate *= Polynomial([lags[0], 1.0])
-    if lags[1] < _CUSP_REACH:
-        rate *= Polynomial([1 + lags[1], -1.0])
-    grown = rate.integ()
-    whole = grown(1.0)
-    return lambda share: np.asarray(grown(share) / whole, dtype=float)
-
-
-def _graded(warp: Callable[[Reals], Reals], even: Reals) -> Reals:
-    """Evenly spread shares of the span drawn towards its cusps, where the curve is hardest to follow."""
-    return (1 - _GRADING) * even + _GRADING * warp(even)
