@@ -128,7 +128,7 @@ def _part(made: Made, record: PartRecord, index: int) -> str:
     rows = [
         ("Pieces", f"{count}" if count == 1 else f"{count}: {escape(_places(record.placed_as))}"),
         ("Face width", f"{record.width:g} mm"),
-        ("Largest diameter", f"{record.diameter:.4f} mm"),
+        ("Largest diameter about the axis", f"{record.diameter:.4f} mm"),
         ("Volume of the solid", f"{record.volume:.3f} mm³"),
         ("Volume by area and width", f"{record.exact_volume:.3f} mm³"),
         ("Flanks deviate at most", f"{record.flank_deviation:.2e} mm"),

@@ -20,7 +20,7 @@ Band = tuple[float, float]
 
 # Part sheet: sizes in its own units, about a pixel on the screen.
 _FRONT = 230.0
-_SECTION_MOST = 150.0
+_SECTION_MOST = 320.0
 _MARGIN, _GAP, _DIMENSIONS = 18.0, 74.0, 92.0
 
 # A picture on its own: light colours that also stand on a dark page, flanks as true as a large screen shows them.
