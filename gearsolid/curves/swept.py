@@ -1,0 +1,345 @@
+"""The edge a carried boundary leaves standing when it rolls: strands cut where they cross, walked round one pitch.
+
+The walk sets out from the deepest place the carried body reaches, which is certainly an edge, keeps the standing
+material on its left, and turns off wherever another strand comes in from that side. What it never meets is cut away.
+"""
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import cached_property
+from itertools import combinations_with_replacement
+from typing import NamedTuple
+
+import numpy as np
+from scipy.optimize import brentq, minimize_scalar
+
+from gearsolid.curves.crossing import chord_crossings
+from gearsolid.curves.curve import Curve, Points, Reals, Section, Turned
+from gearsolid.curves.outline import Piece
+from gearsolid.curves.primitives import Arc
+from gearsolid.curves.rolling import Rolling
+from gearsolid.curves.strand import Strand, strands
+from gearsolid.errors import DesignError, ToleranceError
+
+_SHARES = (1 - np.cos(np.linspace(0, np.pi, 41))) / 2
+# Ends closer than this share of the size are one place; nearer to it than this share of their own size lines join there
+# rather than cross.
+_JOIN = 1e-7
+_AT_JOINT = 1e-3
+# Steps of the search for a crossing, and how close counts as met, as a share of the size.
+_STEPS = 14
+_MET = 1e-13
+_LEAST_ANGLE = 1e-6
+# A place this share of a line's parameter range ahead is the place itself.
+_HERE = 1e-9
+# Radii that differ less than this share along a stretch make it a true arc about the axis.
+_ROUND = 1e-10
+_MOST_STRETCHES = 400
+
+
+class Stretch(NamedTuple):
+    """A part of the edge, in travel order with the standing material on the left.
+
+    Args:
+        curve: the curve it runs on, before `turn`.
+        first: first parameter.
+        last: last parameter.
+        turn: pitches by which the curve is turned about the axis.
+        strand: where it comes from; None for the tip circle.
+    """
+
+    curve: Curve
+    first: float
+    last: float
+    turn: int
+    strand: Strand | None
+
+    def placed(self, pitch: float) -> Curve:
+        """The stretch where it stands; a true arc where it is one about the axis."""
+        factor = complex(np.exp(1j * pitch * self.turn))
+        t = self.first + (self.last - self.first) * np.linspace(0, 1, 9)
+        z = self.curve.point(t) * factor
+        radius = np.abs(z)
+        if np.ptp(radius) <= _ROUND * radius[0]:
+            start = float(np.angle(z[0]))
+            return Arc(0, float(radius.mean()), start, start + float(np.sum(np.angle(z[1:] / z[:-1]))))
+        return Turned(Section(self.curve, self.first, self.last), factor)
+
+
+class _Line(NamedTuple):
+    """A strand's part within the tip circle, sampled, with its box in radius and polar angle."""
+
+    strand: Strand
+    t: Reals
+    z: Points
+    radii: tuple[float, float]
+    angles: tuple[float, float]
+
+    @property
+    def last(self) -> float:
+        return float(self.t[-1])
+
+    @property
+    def here(self) -> float:
+        """Parameters closer than this are one."""
+        return _HERE * float(self.t[-1] - self.t[0])
+
+    def direction(self, at_end: bool) -> complex:
+        """Direction of travel at one end."""
+        a, b = (self.z[-2], self.z[-1]) if at_end else (self.z[0], self.z[1])
+        return complex(b - a)
+
+
+class _Turnoff(NamedTuple):
+    """Where the edge leaves a line: parameter there, the line it takes, the parameter on that one, pitches between."""
+
+    at: float
+    line: int
+    onto: float
+    turn: int
+
+
+@dataclass(frozen=True)
+class Sweep:
+    """A carried boundary and the body it leaves standing.
+
+    Args:
+        pieces: one pitch of the carried boundary in the carried frame, in travel order, material on the left.
+        wrap: turn of the direction from one carried pitch to the next, as a unit complex number.
+        motion: the rolling that carries it round the body.
+        window: rolls looked at lie from -window to window ([rad] for circles, [mm] for lines).
+        order: pitches of the body.
+        hand: +1 where the body lies inside its boundary, -1 where it is a ring around the carried one.
+        tip: radius of the body's tip circle [mm]; 0 or infinity where the sweep alone bounds it.
+    """
+
+    pieces: Sequence[Piece]
+    wrap: complex
+    motion: Rolling
+    window: float
+    order: int
+    hand: int
+    tip: float
+
+    @property
+    def pitch(self) -> float:
+        """Angle of a pitch of the body [rad]."""
+        return 2 * math.pi / self.order
+
+    def within(self, z: Points) -> np.ndarray:
+        """Whether points of the fixed frame lie on the body's side of its tip circle."""
+        return self.hand * (self.tip - np.abs(z)) >= 0
+
+    @cached_property
+    def _lines(self) -> list[_Line]:
+        found = strands(self.pieces, self.wrap, self.motion, self.window, self.within)
+        return [line for s in found for line in self._parts(s)]
+
+    def _parts(self, strand: Strand) -> list[_Line]:
+        """The parts of a strand within the tip circle, each reaching just over it."""
+        curve, t = strand.curve, strand.curve.span[0] + np.ptp(strand.curve.span) * _SHARES
+        starts, stops = np.array([0]), np.array([t.size - 1])
+        if strand.is_corner:
+            kept = np.concatenate([[False], self.within(curve.point(t)), [False]])
+            starts = np.maximum(np.flatnonzero(kept[1:] & ~kept[:-1]) - 1, 0)
+            stops = np.minimum(np.flatnonzero(kept[:-1] & ~kept[1:]), t.size - 1)
+        lines = []
+        for low, high in zip(starts, stops, strict=True):
+            if high > low:
+                u = t[low] + (t[high] - t[low]) * _SHARES
+                z = curve.point(u)
+                angles, radii = np.unwrap(np.angle(z)), np.abs(z)
+                box = (float(radii.min()), float(radii.max())), (float(angles.min()), float(angles.max()))
+                lines.append(_Line(strand, u, z, *box))
+        return lines
+
+    @cached_property
+    def _size(self) -> float:
+        return float(max(np.abs(line.z).max() for line in self._lines))
+
+    @cached_property
+    def _turnoffs(self) -> list[list[_Turnoff]]:
+        """For each line, in travel order, where another line comes in from its left."""
+        found: list[list[_Turnoff]] = [[] for _ in self._lines]
+        for i, j in combinations_with_replacement(range(len(self._lines)), 2):
+            for turn in self._overlapping(i, j):
+                for ti, tj, sine in self._crossings(i, j, turn):
+                    if sine < 0:
+                        found[i].append(_Turnoff(ti, j, tj, turn))
+                    else:
+                        found[j].append(_Turnoff(tj, i, ti, -turn))
+        return [sorted(offs) for offs in found]
+
+    def _overlapping(self, i: int, j: int) -> range:
+        """Turns in pitches that bring line j over line i."""
+        a, b = self._lines[i], self._lines[j]
+        if a.radii[1] < b.radii[0] or b.radii[1] < a.radii[0]:
+            return range(0)
+        first = math.ceil((a.angles[0] - b.angles[1]) / self.pitch - _JOIN)
+        last = math.floor((a.angles[1] - b.angles[0]) / self.pitch + _JOIN)
+        return range(max(first, 0) if i == j else first, last + 1)
+
+    def _crossings(self, i: int, j: int, turn: int) -> list[tuple[float, float, float]]:
+        """Crossings of line i with line j turned: both parameters, and the sine from the second to the first."""
+        a, b, factor = self._lines[i], self._lines[j], complex(np.exp(1j * self.pitch * turn))
+        guesses, chords = chord_crossings(a.t, a.z, b.t, b.z * factor)
+        if i == j and turn == 0:
+            apart = chords[:, 1] > chords[:, 0] + 1
+            guesses, chords = guesses[apart], chords[apart]
+        away = ~self._at_joint(a, b, factor, np.interp(guesses[:, 0], a.t, a.z))
+        found: list[tuple[float, float, float]] = []
+        for guess, (k, m) in zip(guesses[away], chords[away], strict=True):
+            met = _met(a, b, factor, guess, (a.t[k + 1] - a.t[k], b.t[m + 1] - b.t[m]), self._size)
+            if met and not any(abs(met[0] - f[0]) <= a.here and abs(met[1] - f[1]) <= b.here for f in found):
+                found.append(met)
+        return found
+
+    def _at_joint(self, a: _Line, b: _Line, factor: complex, z: Points) -> np.ndarray:
+        """Whether points lie where ends of both lines meet: there lines join, and cross only by rounding."""
+        ends_a, ends_b = a.z[[0, -1]], b.z[[0, -1]] * factor
+        i, _ = np.nonzero(np.abs(ends_a[:, None] - ends_b) <= _JOIN * self._size)
+        close = _AT_JOINT * min(np.ptp(a.z.real) + np.ptp(a.z.imag), np.ptp(b.z.real) + np.ptp(b.z.imag))
+        near: np.ndarray = np.any(np.abs(z[:, None] - ends_a[i]) <= close, axis=1)
+        return near
+
+    @cached_property
+    def _gates(self) -> list[tuple[list[float], list[float]]]:
+        """For each line, where it leaves the tip circle's inside and where it enters it."""
+        return [(self._passages(line, -1), self._passages(line, 1)) for line in self._lines]
+
+    def _passages(self, line: _Line, way: int) -> list[float]:
+        """Where a line passes the tip circle, inwards (+1) or outwards (-1)."""
+        if not 0 < self.tip < math.inf:
+            return []
+        inside = self.within(line.z).astype(int)
+
+        def over(t: float) -> float:
+            return float(np.abs(line.strand.curve.point(np.asarray(t)))) - self.tip
+
+        return [
+            float(brentq(over, line.t[k], line.t[k + 1], xtol=1e-15)) for k in np.flatnonzero(np.diff(inside) == way)
+        ]
+
+    def _deepest(self) -> tuple[int, float]:
+        """Line and parameter where the carried body reaches deepest."""
+        ends = [self.hand * np.abs(line.z) for line in self._lines]
+        i = int(np.argmin([e.min() for e in ends]))
+        line, depth = self._lines[i], ends[i]
+        if np.ptp(depth) <= _ROUND * self._size:
+            return i, float((line.t[0] + line.last) / 2)
+        k = int(np.argmin(depth))
+        if k in (0, depth.size - 1):
+            return i, float(line.t[k])
+        curve, bounds = line.strand.curve, (line.t[k - 1], line.t[k + 1])
+        lowest = minimize_scalar(
+            lambda t: self.hand * abs(curve.point(np.asarray(t))), bounds=bounds, options={"xatol": 1e-12}
+        )
+        return i, float(lowest.x)
+
+    def edge(self) -> list[Stretch]:
+        """One pitch of the edge, from the deepest place to the same one pitch on.
+
+        Raises:
+            DesignError: the teeth that would stand between two pitches are cut off, or do not reach the tip circle.
+            ToleranceError: an edge could not be followed.
+        """
+        if not self._lines:
+            raise DesignError("nothing of the given outline touches a mate: take a pitch radius that it crosses")
+        begin, here = home = self._deepest()
+        line, turn, path = begin, 0, list[Stretch]()
+        while len(path) < _MOST_STRETCHES:
+            on = self._lines[line]
+            leave = self._next(line, here)
+            back = line == begin and len(path) > 0 and home[1] > here - on.here and home[1] <= leave.at
+            path.append(Stretch(on.strand.curve, here, home[1] if back else leave.at, turn, on.strand))
+            if back:
+                return self._checked(path, turn)
+            if leave.line < 0:
+                tip, leave = self._along_tip(path[-1])
+                path.append(tip)
+            line, here, turn = leave.line, leave.onto, turn + leave.turn
+        raise ToleranceError(f"the edge of the sweep does not close after {_MOST_STRETCHES} stretches")
+
+    def _next(self, line: int, here: float) -> _Turnoff:
+        """Where the edge goes on from a place on a line; line -1 stands for the tip circle."""
+        on = self._lines[line]
+        after = here + on.here
+        events = [off for off in self._turnoffs[line] if off.at > after]
+        events += [_Turnoff(t, -1, 0.0, 0) for t in self._gates[line][0] if t > after]
+        return min(events) if events else self._joint(line)
+
+    def _joint(self, line: int) -> _Turnoff:
+        """The line that goes on where one ends; of several, the one with the rest of them on its right."""
+        on = self._lines[line]
+        ways = []
+        for j, other in enumerate(self._lines):
+            turn = round(float(np.angle(on.z[-1] / other.z[0])) / self.pitch)
+            factor = complex(np.exp(1j * self.pitch * turn))
+            if abs(other.z[0] * factor - on.z[-1]) <= _JOIN * self._size:
+                lean = float(np.angle(other.direction(False) * factor / on.direction(True)))
+                ways.append((-lean, j, turn))
+        ways = [w for w in ways if abs(w[0]) < math.pi / 2] or ways
+        if not ways:
+            raise ToleranceError(
+                f"the edge of the sweep is lost at radius {abs(on.z[-1]):.6g} mm, where piece {on.strand.piece} of the "
+                "given outline stops touching and nothing crosses: check the outline there for hidden corners"
+            )
+        _, j, turn = min(ways)
+        return _Turnoff(on.last, j, float(self._lines[j].t[0]), turn)
+
+    def _along_tip(self, before: Stretch) -> tuple[Stretch, _Turnoff]:
+        """The tip arc from where a stretch ends to the next line that comes in."""
+        start = float(np.angle(before.curve.point(np.asarray(before.last))))
+        ways = []
+        for j, line in enumerate(self._lines):
+            for t in self._gates[j][1]:
+                angle = float(np.angle(line.strand.curve.point(np.asarray(t))))
+                ahead = (self.hand * (angle - start)) % self.pitch
+                ways.append((ahead, j, t, round((start + self.hand * ahead - angle) / self.pitch)))
+        if not ways:
+            raise ToleranceError(f"nothing comes in again from the tip circle of {self.tip:.6g} mm radius")
+        ahead, j, t, turn = min(ways)
+        arc = Arc(0, self.tip, start, start + self.hand * ahead)
+        return Stretch(arc, 0.0, 1.0, before.turn, None), _Turnoff(0.0, j, t, turn)
+
+    def _checked(self, path: list[Stretch], turn: int) -> list[Stretch]:
+        heights = [self.hand * np.abs(s.curve.point(np.linspace(s.first, s.last, 17))) for s in path]
+        top = abs(max(float(h.max()) for h in heights))
+        if turn != self.hand:
+            raise DesignError(
+                f"the sweep cuts the teeth off at radius {top:.5g} mm: take fewer teeth on the given outline, a lower "
+                "tip on it, or more teeth on the mate"
+            )
+        if 0 < self.tip < math.inf and all(s.strand for s in path):
+            raise DesignError(
+                f"the tip radius is {self.tip:.5g} mm, but the teeth are pointed at {top:.5g} mm: state a tip radius "
+                f"{'below' if self.hand > 0 else 'above'} that, or none"
+            )
+        return path
+
+
+def _met(
+    a: _Line, b: _Line, factor: complex, guess: Reals, steps: tuple[float, float], size: float
+) -> tuple[float, float, float] | None:
+    """A crossing from a guess by Newton's method on differences that shrink with the steps; None where they miss."""
+    ta, tb = float(guess[0]), float(guess[1])
+    ha, hb = steps[0] / 4, steps[1] / 4
+    offsets = np.array([-1.0, 0.0, 1.0])
+    for _ in range(_STEPS):
+        ta, tb = min(max(ta, float(a.t[0])), a.last), min(max(tb, float(b.t[0])), b.last)
+        ua, ub = np.clip(ta + ha * offsets, a.t[0], a.last), np.clip(tb + hb * offsets, b.t[0], b.last)
+        za, zb = a.strand.curve.point(ua), b.strand.curve.point(ub) * factor
+        along_a, along_b = (za[2] - za[0]) / (ua[2] - ua[0]), (zb[2] - zb[0]) / (ub[2] - ub[0])
+        miss = za[1] - zb[1]
+        sine = float(np.imag(np.conj(along_b) * along_a))
+        scale = abs(along_a) * abs(along_b)
+        if not abs(sine) > _LEAST_ANGLE * scale:
+            return None
+        if abs(miss) <= _MET * size:
+            return ta, tb, sine / scale
+        step_a = -float(np.imag(np.conj(miss) * along_b)) / -sine
+        step_b = -float(np.imag(np.conj(miss) * along_a)) / -sine
+        ta, tb = ta + step_a, tb + step_b
+        ha, hb = min(ha, max(abs(step_a), 1e-4 * ha)), min(hb, max(abs(step_b), 1e-4 * hb))
+    return None
