@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass
 from functools import cached_property
+from math import pi, sin
 
 from gearsolid.curves.loops import pins
 from gearsolid.curves.outline import Outline, Piece
@@ -58,6 +59,11 @@ class PinRing:
     @property
     def teeth(self) -> int:
         return self.pins
+
+    @property
+    def spacing(self) -> float:
+        """Half the distance of neighbouring pin centres over the pin radius [-]; 1 where pins touch."""
+        return self.pin_circle_radius * sin(pi / self.pins) / self.pin_radius
 
     @cached_property
     def pattern(self) -> Outline:
