@@ -13,7 +13,7 @@ from typing import Literal
 import numpy as np
 
 from gearsolid.curves.curve import Curve, Points, Reals
-from gearsolid.errors import DesignError
+from gearsolid.errors import DesignError, ToleranceError
 
 Role = Literal["flank", "fillet", "tip", "root", "pin", "hole"]
 
@@ -23,6 +23,9 @@ _JOIN = 1e-9
 # Breaks closer than this share of the span are one.
 _DISTINCT = 1e-9
 
+# Areas that change by less than this share of the squared size when the panels are halved are settled.
+_SETTLED = 1e-12
+_MOST_PANELS = 4096
 _NODES, _WEIGHTS = np.polynomial.legendre.leggauss(24)
 
 
@@ -131,14 +134,27 @@ def smooth_spans(curve: Curve) -> list[tuple[float, float]]:
     return list(pairwise([*cuts, t1]))
 
 
-def _green(curve: Curve, panels: int = 8) -> float:
-    total = 0.0
-    for t0, t1 in smooth_spans(curve):
+def _green(curve: Curve) -> float:
+    return sum(_swept(curve, t0, t1) for t0, t1 in smooth_spans(curve))
+
+
+def _swept(curve: Curve, t0: float, t1: float) -> float:
+    """Area swept by the ray from the origin [mm2]; panels are halved until only rounding changes."""
+    before, panels = np.inf, 8
+    while panels <= _MOST_PANELS:
         edges = np.linspace(t0, t1, panels + 1)
         half = np.diff(edges)[:, None] / 2
         t = edges[:-1, None] + half * (1 + _NODES)
-        total += float(np.sum(half * _WEIGHTS * np.imag(np.conj(curve.point(t)) * curve.derivative(t)))) / 2
-    return total
+        points = curve.point(t)
+        area = float(np.sum(half * _WEIGHTS * np.imag(np.conj(points) * curve.derivative(t)))) / 2
+        change = abs(area - before)
+        if change <= _SETTLED * float(np.max(np.abs(points))) ** 2:
+            return area
+        before, panels = area, 2 * panels
+    raise ToleranceError(
+        f"the area under a {type(curve).__name__} still changes by {change:.3g} mm2 with {_MOST_PANELS} panels; a "
+        "corner or cusp inside it must be among its breaks"
+    )
 
 
 def _extreme_radius(curve: Curve, sign: int, samples: int = 257) -> float:

@@ -1,4 +1,4 @@
-"""Curves with a closed form: segment, arc, ellipse, parabola, and any pair of functions."""
+"""Curves with a closed form: segment, arc, ellipse, and any formula with its two derivatives."""
 
 from collections.abc import Callable
 from dataclasses import dataclass

@@ -9,11 +9,14 @@ from hypothesis import strategies as st
 
 from gearsolid.curves.curve import Mirrored, Reversed, Section, Turned
 from gearsolid.curves.envelope import Envelope
+from gearsolid.curves.length import ArcLength
 from gearsolid.curves.loops import disc, hole, holes, pins
 from gearsolid.curves.outline import Outline, Piece
-from gearsolid.curves.primitives import Arc, Ellipse, Segment
+from gearsolid.curves.parallel import Parallel
+from gearsolid.curves.primitives import Arc, Ellipse, Formula, Segment
 from gearsolid.curves.rolling import CircleOnCircle
-from gearsolid.errors import DesignError
+from gearsolid.curves.roulette import Trace
+from gearsolid.errors import DesignError, ToleranceError
 
 sizes = st.floats(0.1, 50)
 counts = st.integers(2, 40)
@@ -99,6 +102,23 @@ def test_area_does_not_depend_on_cuts_or_turn(cut, angle):
 def test_area_counts_two_cusps_inside_one_piece():
     two = Outline((Piece(epicycloid(6, 1, 4 * pi), "flank"),), 3)
     assert two.area == pytest.approx(pi * 7 * 8, rel=1e-12)
+
+
+@pytest.mark.parametrize("shortening", [0.5, 0.9, 0.99])
+def test_area_of_a_disc_with_sharp_valleys(shortening):
+    """Steiner for a parallel of a closed curve of turning number one: A - L d + pi d^2 inwards."""
+    path = Trace(CircleOnCircle(9, -10), 10 / shortening, 0, 2 * pi)
+    disc = Outline((Piece(Parallel(path, 1e-3), "flank"),), 9)
+    area = Outline((Piece(path, "flank"),), 9).area
+    length = 9 * ArcLength(path).total
+    sign = np.sign(area)
+    assert disc.area == pytest.approx(area - 1e-3 * length + sign * pi * 1e-6, rel=1e-11)
+
+
+def test_a_hidden_corner_spoils_the_area_and_is_reported():
+    bent = Formula(lambda t: 3 + t * 1j, lambda t: np.where(t < 0.1, 1j, 3j), np.zeros_like, -1, 1)
+    with pytest.raises(ToleranceError, match=r"area under a Formula still changes by .* must be among its breaks"):
+        _ = Outline((Piece(bent, "flank"), Piece(Segment(3 + 1j, 3 - 1j), "root")), 1).area
 
 
 def test_extreme_radii_inside_a_piece():
