@@ -5,7 +5,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from gearsolid.contact.closest import Measure, Spots, measure, settle, slide, slide_to_ridge, spots_at
-from gearsolid.contact.view import Touching, View, views
+from gearsolid.contact.view import Touching, View, clear_views, overlap_views
 from gearsolid.curves.curve import Reals
 from gearsolid.curves.field import Integers
 from gearsolid.pairs.engagement import Engagement
@@ -70,12 +70,16 @@ def sweep(e: Engagement, poses: int = POSES) -> Sweep:
     psi = e.period * np.arange(poses) / poses
     pitch = min(o.pitch_angle * o.r_max for o in (e.a, e.b))
     margin, slack = 0.05 * pitch, _SLACK * pitch
+    views, overlapping = clear_views(e), False
     while True:
-        seen = tuple((v, v.sweep(psi, np.zeros(poses), margin, slack)) for v in views(e))
+        seen = tuple((v, v.sweep(psi, np.zeros(poses), margin, slack)) for v in views)
         found = min((float(t.distance.min(initial=np.inf)) for _, t in seen), default=np.inf)
-        if found <= margin or margin > 1e3 * pitch:
+        if found < 0 and not overlapping:
+            views, overlapping = overlap_views(e), True
+        elif found <= margin or margin > 1e3 * pitch:
             return Sweep(psi, seen, margin, pitch)
-        margin = 2 * min(found, 8 * margin)
+        else:
+            margin = 2 * min(found, 8 * margin)
 
 
 def lowest_rows(t: Touching, poses: int, pitch_length: float) -> Integers:

@@ -125,7 +125,7 @@ def settle(slope: Callable[[Reals], Reals], low: Reals, high: Reals) -> Reals:
 
 
 def slide_to_ridge(view: View, spots: Spots) -> tuple[Spots, Measure]:
-    """As `slide`, but for deep overlaps: there the distance is least on a ridge between two flanks, not at a smooth dip."""
+    """As `slide`, but for deep overlaps: there the distance is least on a ridge between flanks, not at a smooth dip."""
 
     def along(place: Reals) -> Reals:
         many = replace(spots.repeated(_GRID.size), place=place.ravel())

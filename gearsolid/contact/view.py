@@ -161,15 +161,25 @@ class View:
         return Touching(pose, pitch, sample, distance, closing)
 
 
-def views(e: Engagement) -> tuple[View, View]:
-    """a seen from b, and the corners of b seen from a.
+def clear_views(e: Engagement) -> tuple[View, View]:
+    """a seen from b, and the corners of b seen from a: enough for parts that do not overlap.
 
     Where two smooth stretches come closest each is the other's foot, so following a finds them all; only a corner of b
     has no tangent of its own to be found by.
     """
+    return _view_of_a(e), _view_of_b(e, corners(field_of(e.b).cloud))
+
+
+def overlap_views(e: Engagement) -> tuple[View, View]:
+    """a seen from b, and b seen from a: where they overlap, either may lie deeper in the other."""
+    return _view_of_a(e), _view_of_b(e, whole(field_of(e.b).cloud))
+
+
+def _view_of_a(e: Engagement) -> View:
     a, b = field_of(e.a), field_of(e.b)
-    offset = e.centre_a - e.centre_b
-    return (
-        View(a, b, offset, e.angle_a, e.rate_a, e.angle_b, e.rate_b, 0, whole(a.cloud)),
-        View(b, a, -offset, e.angle_b, e.rate_b, e.angle_a, e.rate_a, 1, corners(b.cloud)),
-    )
+    return View(a, b, e.centre_a - e.centre_b, e.angle_a, e.rate_a, e.angle_b, e.rate_b, 0, whole(a.cloud))
+
+
+def _view_of_b(e: Engagement, runs: Runs) -> View:
+    a, b = field_of(e.a), field_of(e.b)
+    return View(b, a, e.centre_b - e.centre_a, e.angle_b, e.rate_b, e.angle_a, e.rate_a, 1, runs)

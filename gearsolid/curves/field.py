@@ -164,7 +164,8 @@ class Field:
         hand = self._hand(start, fraction, slope)
         normal = -1j * hand / np.abs(hand)
         sign = np.where(np.real((local - foot) * np.conj(normal)) < 0, -1.0, 1.0)
-        far = gap > 1e-9
+        # So near the boundary the difference of two points has lost its direction; the boundary's own normal has not.
+        far = gap > 1e-6
         outward = np.where(far, sign * (local - foot) / np.where(far, gap, 1.0), normal)
         return Near(sign * gap, cloud.piece[start], foot * back, outward * back)
 
@@ -269,7 +270,9 @@ def _osculating_distance(cloud: Cloud, index: Integers, local: Points) -> Reals:
     squared = along**2 + left**2
     # Left-hand distance to a circle of curvature k, written so that it stays exact as k tends to 0.
     inner = np.maximum(1 - 2 * curvature * left + curvature**2 * squared, 0.0)
-    to_circle = (2 * left - curvature * squared) / (1 + np.sqrt(inner))
+    # Beyond the circle's centre its far side would come nearer: there the side of the tangent decides.
+    to_circle = np.sign(left) * np.abs((2 * left - curvature * squared) / (1 + np.sqrt(inner)))
+    to_circle = np.where(curvature * left > 0.5, np.sign(left) * np.sqrt(squared), to_circle)
     beyond = cloud.edge[index] * along > 0
     side = np.real((local - cloud.point[index]) * np.conj(1j * cloud.hand[index]))
     to_end = np.where(side < 0, -1.0, 1.0) * np.sqrt(squared)

@@ -47,11 +47,14 @@ class DenseOutline:
         return shapely.contains_xy(self.area, z.real, z.imag) ^ self.material_outside
 
     def distance(self, z: np.ndarray) -> np.ndarray:
-        """Distance to the polygon sides that meet at the nearest vertex."""
-        _, k = self.tree.query(np.column_stack([z.real, z.imag]))
+        """Distance to the polygon sides that meet at the nearest vertices.
+
+        Several of them, since a nearby side with far vertices may be nearer than a vertex of another side.
+        """
+        _, k = self.tree.query(np.column_stack([z.real, z.imag]), k=8)
         start = self.points[k]
-        sides = [_to_side(z, start, other[k]) for other in self.neighbours]
-        return np.minimum(*sides)
+        sides = [_to_side(z[:, None], start, other[k]) for other in self.neighbours]
+        return np.minimum(*sides).min(axis=1)
 
 
 def _to_side(z: np.ndarray, start: np.ndarray, end: np.ndarray) -> np.ndarray:
