@@ -1,6 +1,5 @@
-"""The keys a recipe may hold, written from the schema itself: for the page of recipes and for `gearsolid keys`."""
+"""The keys a recipe may hold, written from the schema itself: for `recipes/keys.md` and for `gearsolid keys`."""
 
-import sys
 from collections.abc import Iterator
 from dataclasses import dataclass
 
@@ -76,13 +75,11 @@ def keys_text(machine: str | None) -> str:
 
 
 def page() -> str:
-    """The keys of every kind of machine as a Markdown section each."""
-    return "\n".join(f'### `machine = "{kind}"`\n\n{_summary(m)}\n\n{markdown(m)}' for kind, m in MACHINES.items())
+    """The keys of every kind of machine as a Markdown page."""
+    return "# Keys of a recipe\n\n" + "\n".join(
+        f'## `machine = "{kind}"`\n\n{_summary(m)}\n\n{markdown(m)}' for kind, m in MACHINES.items()
+    )
 
 
 def _summary(model: type[Table]) -> str:
     return (model.__doc__ or "").strip().splitlines()[0]
-
-
-if __name__ == "__main__":
-    sys.stdout.write(page())

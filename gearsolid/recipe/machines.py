@@ -28,6 +28,7 @@ class MachineTable(Table):
     """The top level of a recipe."""
 
     name: str = entry("name of the design, heads the report", min_length=1, max_length=80)
+    machine: str = entry("kind of machine")
 
     @abstractmethod
     def build(self) -> Machine:

@@ -32,11 +32,14 @@ class Bored(Table):
         return Bore.keyed(self.bore, self.chamfer) if self.key else Bore(self.bore, chamfer=self.chamfer)
 
 
-class InvoluteTable(Bored):
-    """An external involute member."""
-
+class _Size(Table):
     teeth: int = entry("number of teeth", ge=3)
     face_width: float = entry("width of the teeth along the axis", "mm", gt=0)
+
+
+class InvoluteTable(Bored, _Size):
+    """An external involute member."""
+
     profile_shift: float = entry("profile shift coefficient; positive makes the tooth thicker", default=0.0)
     tooth_thinning: float = entry(
         "how much thinner each tooth is, as an arc of the reference circle: this member's share of the play", "mm", 0.0
@@ -59,11 +62,9 @@ class InvoluteTable(Bored):
         return Blank(self.face_width, self.shaft_hole())
 
 
-class RingTable(Table):
+class RingTable(_Size):
     """An involute annulus."""
 
-    teeth: int = entry("number of teeth", ge=3)
-    face_width: float = entry("width of the teeth along the axis", "mm", gt=0)
     rim_diameter: float | None = entry(
         "outside diameter; two tooth depths beyond the root circle when left out", "mm", None, gt=0
     )
@@ -89,22 +90,20 @@ class RingTable(Table):
         return Blank(self.face_width, rim_diameter=self.rim_diameter)
 
 
-class ClockTable(Bored):
+class ClockTable(Bored, _Size):
     """A wheel or pinion of a clock, whose teeth follow from the counts."""
 
     teeth: int = entry("number of teeth or leaves", ge=6)
-    face_width: float = entry("width of the teeth along the axis", "mm", gt=0)
 
     def blank(self) -> Blank:
         """The body before teeth."""
         return Blank(self.face_width, self.shaft_hole())
 
 
-class CycloidalTable(Bored):
+class CycloidalTable(Bored, _Size):
     """A cycloidal member of a clock or instrument."""
 
     teeth: int = entry("number of teeth or leaves", ge=5)
-    face_width: float = entry("width of the teeth along the axis", "mm", gt=0)
     addendum: float = entry("height of the tip above the reference circle", "mm", gt=0)
     dedendum: float = entry("depth of the root below the reference circle", "mm", gt=0)
     describing_radius: float | None = entry(
