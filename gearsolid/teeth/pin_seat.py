@@ -50,12 +50,6 @@ class PinSeat:
                 f"the {holder} has a radius of {self.edge_radius:g} mm between the pins; to hold them it must lie "
                 f"between {low:g} and {high:g} mm"
             )
-        if self.bury_angle >= pi / self.pins:
-            raise DesignError(
-                f"each of the {self.pins} pins takes {np.degrees(2 * self.bury_angle):.4g} deg of the {holder} at "
-                f"{self.edge_radius:g} mm, a pitch has {360 / self.pins:.4g} deg: take fewer or smaller pins, or move "
-                "the edge away from the pin circle"
-            )
 
     @property
     def bury_angle(self) -> float:
