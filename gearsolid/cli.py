@@ -98,14 +98,16 @@ def _roll(chosen: argparse.Namespace) -> int:
 
 
 def _make(chosen: argparse.Namespace) -> int:
-    import gearsolid.solids  # noqa: F401  (says what is missing when the CAD kernel does not load)
-    from gearsolid.output.folder import make_folder
     from gearsolid.output.progress import progress
     from gearsolid.output.wording import VERDICTS, finding
     from gearsolid.recipe import read_recipe
 
     recipe = read_recipe(chosen.recipe)
     with progress() as tell:
+        tell(0, 1, "loading the CAD kernel")
+        import gearsolid.solids  # noqa: F401  (says what is missing when the kernel does not load)
+        from gearsolid.output.folder import make_folder
+
         result = make_folder(recipe.name, recipe.machine, recipe.rows, chosen.out, tell)
     print(f"{VERDICTS[result.verdict]}. {finding(result.worst)}")
     print(f"Folder {chosen.out} is written; open {chosen.out / 'report.html'} to see it turn.")

@@ -29,4 +29,4 @@ def progress() -> Iterator[Tell]:
 
 def _plain(done: int, total: int, what: str) -> None:
     if done < total:
-        print(f"{done + 1} of {total}: {what}", file=sys.stderr, flush=True)
+        print(f"{done + 1} of {total}: {what}" if total > 1 else what, file=sys.stderr, flush=True)
