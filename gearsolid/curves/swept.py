@@ -27,9 +27,11 @@ _SHARES = (1 - np.cos(np.linspace(0, np.pi, 41))) / 2
 # rather than cross.
 _JOIN = 1e-7
 _AT_JOINT = 1e-3
-# Steps of the search for a crossing, and how close counts as met, as a share of the size.
+# Steps of the search for a crossing; how close counts as met, as a share of the size; the finest differences, as a
+# share of a line's range; and the least angle [rad] between lines that cross.
 _STEPS = 14
 _MET = 1e-13
+_FINEST = 1e-6
 _LEAST_ANGLE = 1e-6
 # A place this share of a line's parameter range ahead is the place itself.
 _HERE = 1e-9
@@ -111,7 +113,7 @@ class Sweep:
         window: rolls looked at lie from -window to window ([rad] for circles, [mm] for lines).
         order: pitches of the body.
         hand: +1 where the body lies inside its boundary, -1 where it is a ring around the carried one.
-        tip: radius of the body's tip circle [mm]; 0 or infinity where the sweep alone bounds it.
+        tip: radius of the body's tip circle [mm]; the sweep alone bounds the body where it does not reach that far.
     """
 
     pieces: Sequence[Piece]
@@ -210,8 +212,6 @@ class Sweep:
 
     def _passages(self, line: _Line, way: int) -> list[float]:
         """Where a line passes the tip circle, inwards (+1) or outwards (-1)."""
-        if not 0 < self.tip < math.inf:
-            return []
         inside = self.within(line.z).astype(int)
 
         def over(t: float) -> float:
@@ -241,7 +241,7 @@ class Sweep:
         """One pitch of the edge, from the deepest place to the same one pitch on.
 
         Raises:
-            DesignError: the teeth that would stand between two pitches are cut off, or do not reach the tip circle.
+            DesignError: nothing touches, or the teeth that would stand between two pitches are cut off.
             ToleranceError: an edge could not be followed.
         """
         if not self._lines:
@@ -311,11 +311,6 @@ class Sweep:
                 f"the sweep cuts the teeth off at radius {top:.5g} mm: take fewer teeth on the given outline, a lower "
                 "tip on it, or more teeth on the mate"
             )
-        if 0 < self.tip < math.inf and all(s.strand for s in path):
-            raise DesignError(
-                f"the tip radius is {self.tip:.5g} mm, but the teeth are pointed at {top:.5g} mm: state a tip radius "
-                f"{'below' if self.hand > 0 else 'above'} that, or none"
-            )
         return path
 
 
@@ -341,5 +336,6 @@ def _met(
         step_a = -float(np.imag(np.conj(miss) * along_b)) / -sine
         step_b = -float(np.imag(np.conj(miss) * along_a)) / -sine
         ta, tb = ta + step_a, tb + step_b
-        ha, hb = min(ha, max(abs(step_a), 1e-4 * ha)), min(hb, max(abs(step_b), 1e-4 * hb))
+        ha = min(ha, max(abs(step_a), _FINEST * (a.last - float(a.t[0]))))
+        hb = min(hb, max(abs(step_b), _FINEST * (b.last - float(b.t[0]))))
     return None

@@ -21,9 +21,11 @@ from gearsolid.errors import DesignError
 # Shorter ranges than this share of a curve's span are none; so many places of a range are asked for their reason.
 _NONE = 1e-6
 _PLACES = 33
+# A blank this share larger than the sweep can leave bounds nothing.
+_BEYOND = 1e-3
 # Radii that differ less than this share belong to a circle about the axis.
 _ROUND = 1e-9
-# Ends further apart than this share of the size are drawn together.
+# Ends further apart than this share of the size are drawn together; a piece not longer than it is none.
 _APART = 1e-10
 _WORKING = ("flank", "pin", "hole")
 _ROLES: dict[Role, Role] = {"flank": "flank", "pin": "flank", "hole": "flank", "fillet": "flank", "root": "tip"}
@@ -149,17 +151,22 @@ def external_mate(
         tooth_thinning: circumferential reduction of the mate's tooth thickness at its pitch circle [mm].
 
     Raises:
-        DesignError: a number out of its range, a ring given, teeth pointed below their tip or cut off; with the limit.
+        DesignError: a number out of its range, a ring given, teeth pointed below their tip, or cut off; with the limit.
         ToleranceError: the edge of the sweep could not be followed.
     """
     _check(outline, pitch_radius, teeth)
     _check_kind(outline, ring=False)
     radius = pitch_radius * teeth / outline.order
     motion = CircleOnCircle(radius, pitch_radius)
-    tip = _tip(tip_radius, motion.centre_distance - outline.r_min, 1)
+    if outline.r_max >= motion.centre_distance:
+        raise DesignError(
+            f"the given outline reaches {outline.r_max:.5g} mm from its axis, beyond the axis of a mate of {teeth} "
+            f"teeth at {motion.centre_distance:.5g} mm: take more teeth or a lower tip"
+        )
+    tip = _tip(tip_radius, motion.centre_distance - _core(outline), 1)
     facing = tuple(Piece(Turned(p.curve, -1), p.role) for p in outline.pieces)
     sweep = Sweep(facing, _wrap(outline), motion, math.pi, teeth, 1, tip)
-    return _mate(sweep, radius, motion.centre_distance, tooth_thinning)
+    return _mate(sweep, radius, motion.centre_distance, tip_radius, tooth_thinning)
 
 
 def ring_mate(
@@ -180,9 +187,9 @@ def ring_mate(
         raise DesignError(f"a ring of {teeth} teeth has no room for {outline.order}; take {outline.order + 1} or more")
     radius = pitch_radius * teeth / outline.order
     motion = CircleOnCircle(radius, -pitch_radius)
-    tip = _tip(tip_radius, motion.centre_distance + outline.r_min, -1)
+    tip = _tip(tip_radius, motion.centre_distance + _core(outline), -1)
     sweep = Sweep(outline.pieces, _wrap(outline), motion, math.pi, teeth, -1, tip)
-    return _mate(sweep, radius, motion.centre_distance, tooth_thinning)
+    return _mate(sweep, radius, motion.centre_distance, tip_radius, tooth_thinning)
 
 
 def inner_mate(
@@ -207,7 +214,7 @@ def inner_mate(
     motion = CircleOnCircle(radius, -pitch_radius)
     tip = _tip(tip_radius, outline.r_max + motion.centre_distance, 1)
     sweep = Sweep(outline.pieces, _wrap(outline), motion, math.pi, teeth, 1, tip)
-    return _mate(sweep, radius, -motion.centre_distance, tooth_thinning)
+    return _mate(sweep, radius, -motion.centre_distance, tip_radius, tooth_thinning)
 
 
 def rack_mate(
@@ -238,7 +245,7 @@ def rack_mate(
     sweep = Sweep(
         tuple(rack), 1, LineOnCircle(radius), 2 * math.pi * radius, teeth, 1, _tip(tip_radius, radius + depth, 1)
     )
-    return _mate(sweep, radius, math.inf, tooth_thinning)
+    return _mate(sweep, radius, math.inf, tip_radius, tooth_thinning)
 
 
 def domed_tips(outline: Outline, height: float) -> Outline:
@@ -303,10 +310,15 @@ def _wrap(outline: Outline) -> complex:
     return outline.step if outline.is_chain else 1.0
 
 
+def _core(outline: Outline) -> float:
+    """Radius of the full disc inside the given teeth [mm]; separate pins have none."""
+    return outline.r_min if outline.is_chain else 0.0
+
+
 def _tip(tip_radius: float | None, limit: float, hand: int) -> float:
-    """Tip radius of the sweep; without one, so far out that it bounds nothing."""
+    """Tip radius of the sweep; without one, just out of reach."""
     if tip_radius is None:
-        return math.inf if hand > 0 else 0.0
+        return limit * (1 + hand * _BEYOND)
     if not (tip_radius > 0 and hand * (limit - tip_radius) > _ROUND * limit):
         side = "above 0 and below" if hand > 0 else "above"
         raise DesignError(
@@ -316,20 +328,32 @@ def _tip(tip_radius: float | None, limit: float, hand: int) -> float:
     return tip_radius
 
 
-def _mate(sweep: Sweep, radius: float, distance: float, thinning: float) -> Mate:
+def _mate(sweep: Sweep, radius: float, distance: float, tip_radius: float | None, thinning: float) -> Mate:
     path = sweep.edge()
     pieces = _thinned(path, sweep, thinning / radius) if thinning else _closed(path, sweep)
     centred = complex(np.exp(-0.5j * sweep.hand * sweep.pitch))
     outline = Outline(_joined([Piece(_turned(p.curve, centred), p.role) for p in pieces], sweep), sweep.order)
-    return Mate(sweep.order, outline, radius, distance, sweep, tuple(path))
+    mate = Mate(sweep.order, outline, radius, distance, sweep, tuple(path))
+    if not any(s.strand and not s.strand.is_corner and sweep.pieces[s.strand.piece].role in _WORKING for s in path):
+        raise DesignError(
+            f"the tips of the given outline cut the mate's teeth off at radius {mate.tip_radius:.5g} mm, before any flank "
+            "touches: take fewer or lower teeth on the given outline, or more teeth on the mate"
+        )
+    if tip_radius is not None and all(s.strand for s in path):
+        raise DesignError(
+            f"the tip radius is {tip_radius:.5g} mm, but the teeth are pointed at {mate.tip_radius:.5g} mm: state a "
+            f"tip radius {'below' if sweep.hand > 0 else 'above'} that, or none"
+        )
+    return mate
 
 
 def _joined(pieces: list[Piece], sweep: Sweep) -> tuple[Piece, ...]:
-    """The pieces with ends moved onto their neighbours' where rounding parts them.
+    """The pieces without those of no length, ends moved onto their neighbours' where rounding parts them.
 
     Where a normal grazes the pitch circle the roll is known to half the digits only, and so is how far along its edge a
     strand ends.
     """
+    pieces = [p for p in pieces if abs(p.curve.end - p.curve.start) > _APART * abs(p.curve.start)]
     starts = np.array([p.curve.start for p in pieces])
     ends = np.array([p.curve.end for p in pieces])
     gaps = np.roll(starts, -1) - ends
@@ -366,7 +390,7 @@ def _turned(curve: Curve, factor: complex) -> Curve:
 def _closed(path: list[Stretch], sweep: Sweep) -> list[Piece]:
     """The edge from where its first stretch ends; first and last are two halves of one."""
     whole = path[-1]._replace(last=path[0].last)
-    return [_piece(s, sweep) for s in [*path[1:-1], whole] if s.last - s.first > _NONE * _NONE]
+    return [_piece(s, sweep) for s in [*path[1:-1], whole]]
 
 
 def _thinned(path: list[Stretch], sweep: Sweep, angle: float) -> list[Piece]:
