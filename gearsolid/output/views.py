@@ -86,25 +86,32 @@ def close_view(engagement: Engagement, contact: Contact, half: float) -> str:
         half: half the width of the window [mm].
     """
     x, y = contact.place.real, -contact.place.imag
-    psi = radians(contact.input_angle)
-    e = engagement
-    sides = ((e.a, e.centre_a, e.angle_a, e.rate_a, "first"), (e.b, e.centre_b, e.angle_b, e.rate_b, "second"))
-    both = "".join(
-        f'<path class="face {css}" d="{_filled(outline)}" '
-        f'transform="{_turned(centre * np.exp(1j * e.frame_rate * psi), angle + (rate + e.frame_rate) * psi)}"/>'
-        for outline, centre, angle, rate, css in sides
-    )
+    first, second = _standing(engagement, radians(contact.input_angle))
+    clip = f"first-{half:.6g}".replace(".", "-")
     unit = half / 100
     bar = _round_down(0.6 * half)
     bx, by, up = x - 90 * unit, y + 90 * unit, y + 85 * unit
     return (
         f'<svg class="close" viewBox="{x - half:.5f} {y - half:.5f} {2 * half:.5f} {2 * half:.5f}" role="img" '
         f'aria-label="{escape(contact.name_a)} with {escape(contact.name_b)} at the tightest place, window '
-        f'{2 * half:.3g} mm wide"><g transform="scale(1 -1)">{both}</g>'
+        f'{2 * half:.3g} mm wide"><clipPath id="{clip}"><path {first}/></clipPath><g transform="scale(1 -1)">'
+        f'<path class="face first" {first}/><path class="face second" {second}/></g>'
+        f'<g clip-path="url(#{clip})" transform="scale(1 -1)"><path class="shared" {second}/></g>'
         f'<circle class="place" cx="{x:.5f}" cy="{y:.5f}" r="{9 * unit:.5f}"/>'
         f'<path class="bar" d="M{bx:.5f} {by:.5f}h{bar:.5f}"/>'
         f'<text class="bar-text" x="{bx:.5f}" y="{up:.5f}" font-size="{9 * unit:.5f}">{bar:g} mm</text></svg>'
     )
+
+
+def _standing(e: Engagement, psi: float) -> tuple[str, str]:
+    """Path and place, as attributes, of the two outlines of an engagement at input angle psi [rad]."""
+    frame = e.frame_rate * psi
+    places = ((e.a, e.centre_a, e.angle_a + e.rate_a * psi), (e.b, e.centre_b, e.angle_b + e.rate_b * psi))
+    first, second = (
+        f'd="{_filled(outline)}" transform="{_turned(centre * complex(np.exp(1j * frame)), angle + frame)}"'
+        for outline, centre, angle in places
+    )
+    return first, second
 
 
 def windows(engagement: Engagement, contact: Contact) -> Band:
