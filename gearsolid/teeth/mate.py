@@ -336,8 +336,8 @@ def _mate(sweep: Sweep, radius: float, distance: float, tip_radius: float | None
     mate = Mate(sweep.order, outline, radius, distance, sweep, tuple(path))
     if not any(s.strand and not s.strand.is_corner and sweep.pieces[s.strand.piece].role in _WORKING for s in path):
         raise DesignError(
-            f"the tips of the given outline cut the mate's teeth off at radius {mate.tip_radius:.5g} mm, before any flank "
-            "touches: take fewer or lower teeth on the given outline, or more teeth on the mate"
+            f"the tips of the given outline cut the mate's teeth off at radius {mate.tip_radius:.5g} mm, before any "
+            "flank touches: take fewer or lower teeth on the given outline, or more teeth on the mate"
         )
     if tip_radius is not None and all(s.strand for s in path):
         raise DesignError(
