@@ -17,14 +17,18 @@ _LEVER = 0.02
 # Overlapping parts have no position to turn from; their negative play is that of the contacts that resist best.
 _STRONG_LEVER = 0.5
 
-_ROUNDS = 10
+_ROUNDS = 40
+_PATIENCE = 4
 
 # Longest Newton step, in pitches of b.
 _STRIDE = 0.1
 
 _WITNESSES = 3
 _CHECKS = 4
-_SETTLED = 1e-9
+_SETTLED = 1e-11
+
+# Stops this close are the same [rad].
+_SAME = 1e-9
 
 
 @dataclass(frozen=True)
@@ -54,61 +58,82 @@ def window(s: Sweep, radius: float, least: float) -> Window:
         least: least distance found [mm]; below zero the parts overlap.
     """
     lever = radius * (_LEVER if least >= 0 else _STRONG_LEVER)
-    return Window(-_freedom(s, -1, lever), _freedom(s, +1, lever))
+    poses = s.psi.size
+    free = _freedom(s, np.tile(s.psi, 2), np.repeat([-1.0, 1.0], poses), lever)
+    return Window(-free[:poses], free[poses:])
 
 
-def _freedom(s: Sweep, way: int, lever: float) -> Reals:
-    """Turn of b in one way until it is stopped [rad], per pose.
+def _freedom(s: Sweep, psi: Reals, way: Reals, lever: float) -> Reals:
+    """Turn of b until it is stopped [rad], at each input angle in the way asked for.
 
     The stop found from the nearest samples is checked by a new sweep with b turned there; a stop met earlier takes its
     place.
     """
-    free = _stop(s.seen, s.psi, np.zeros_like(s.psi), way, lever)
+    still = np.zeros_like(psi)
+    free = _stop(tuple((v, t.repeated(s.psi.size)) for v, t in s.seen), psi, still, way, lever)
     slack = 0.02 * s.pitch_length
     while np.isnan(free).any() and slack < s.pitch_length:
-        seen = tuple((v, v.sweep(s.psi, np.zeros_like(s.psi), s.margin, slack)) for v, _ in s.seen)
-        free = _stop(seen, s.psi, np.zeros_like(s.psi), way, lever)
+        seen = tuple((v, v.sweep(psi, still, s.margin, slack)) for v, _ in s.seen)
+        free = _stop(seen, psi, still, way, lever)
         slack *= 4
     for _ in range(_CHECKS):
         extra = way * np.nan_to_num(free)
-        seen = tuple((v, v.sweep(s.psi, extra, s.margin, 0.0)) for v, _ in s.seen)
-        earlier = np.fmin(free, _stop(seen, s.psi, extra, way, lever))
-        settled = not np.any(earlier < free - _SETTLED)
+        seen = tuple((v, v.sweep(psi, extra, s.margin, 0.0)) for v, _ in s.seen)
+        earlier = np.fmin(free, _stop(seen, psi, extra, way, lever))
+        settled = not np.any(earlier < free - _SAME)
         free = earlier
         if settled:
             break
     return free
 
 
-def _stop(seen: tuple[tuple[View, Touching], ...], psi: Reals, extra: Reals, way: int, lever: float) -> Reals:
+def _stop(seen: tuple[tuple[View, Touching], ...], psi: Reals, extra: Reals, way: Reals, lever: float) -> Reals:
     free = np.full(psi.size, np.nan)
     for view, touching in seen:
-        closing = -way * touching.closing
+        closing = -way[touching.pose] * touching.closing
         rows = np.flatnonzero(closing > lever)
         rows = _leaders(touching, rows, touching.distance[rows] / closing[rows])
         if rows.size:
-            spots, stopped = _stopped(view, spots_at(view, touching, rows, psi, extra, 2), way, lever)
-            np.fmin.at(free, touching.pose[rows[stopped]], way * spots.extra[stopped])
+            pose = touching.pose[rows]
+            turn, stopped = _stopped(view, spots_at(view, touching, rows, psi, extra, 2), way[pose], lever)
+            np.fmin.at(free, pose[stopped], turn[stopped])
     return free
 
 
-def _stopped(view: View, spots: Spots, way: int, lever: float) -> tuple[Spots, NDArray[np.bool_]]:
+def _stopped(view: View, spots: Spots, way: Reals, lever: float) -> tuple[Reals, NDArray[np.bool_]]:
     """b turned until each spot just touches, the spot sliding along as it does (Newton on the gap).
 
     Returns:
-        The spots with their turns, and which of them did come to touch.
+        The extra turns of b in its way [rad], and for which spots b did come to touch.
     """
-    start, pitch = spots.extra, (view.probe if view.probe_share else view.target).outline.pitch_angle
-    for _ in range(_ROUNDS):
+    start, pitch = way * spots.extra, (view.probe if view.probe_share else view.target).outline.pitch_angle
+    turn, stopped, before = start.copy(), np.zeros(start.size, dtype=bool), np.full(start.size, np.inf)
+    free, blocked = np.full(start.size, -np.inf), np.full(start.size, np.inf)
+    at = np.arange(start.size)
+    for round_ in range(_ROUNDS):
         spots, exact, fall = newton(view, spots)
-        arm = np.maximum(-way * exact.closing, lever)
-        touching = np.abs(exact.near.distance) + np.abs(fall) <= _SETTLED * arm
-        if touching.all():
+        gap, u = exact.near.distance, turn[at]
+        arm = np.maximum(-way[at] * exact.closing, lever)
+        free[at] = np.where(gap > 0, np.maximum(free[at], u), free[at])
+        blocked[at] = np.where(gap < 0, np.minimum(blocked[at], u), blocked[at])
+        between = blocked[at] - free[at]
+        stopped[at] = (np.abs(gap) + np.abs(fall) <= _SETTLED * arm) | (np.abs(between) <= _SETTLED)
+        # Spots that touch are done; of the others those that no longer come nearer lead nowhere.
+        nearer = (round_ < _PATIENCE) | (np.abs(gap) < before[at] / 2) | np.isfinite(between)
+        going = ~stopped[at] & nearer
+        before[at] = np.abs(gap)
+        step = u + np.clip((gap - fall) / arm, -_STRIDE * pitch, _STRIDE * pitch)
+        # Where two corners meet the gap has a kink and Newton hops over it; then the middle of the bracket is taken.
+        bracketed = np.isfinite(between)
+        astray = bracketed & ((step <= free[at]) | (step >= blocked[at]))
+        step = np.where(astray, free[at] + np.where(bracketed, between, 0.0) / 2, step)
+        at, step = at[going], step[going]
+        if at.size == 0:
             break
-        step = np.clip((exact.near.distance - fall) / arm, -_STRIDE * pitch, _STRIDE * pitch)
-        spots = around(view, replace(spots, extra=spots.extra + way * step), 2)
+        turn[at] = step
+        spots = around(view, replace(spots.take(going), extra=way[at] * step), 2)
     # A spot that has wandered beyond the next tooth says nothing about the first stop.
-    return spots, touching & (np.abs(spots.extra - start) < pitch)
+    return turn, stopped & (np.abs(turn - start) < pitch)
 
 
 def _leaders(touching: Touching, rows: Integers, turn: Reals) -> Integers:

@@ -66,6 +66,11 @@ class Touching:
     distance: Reals
     closing: Reals
 
+    def repeated(self, poses: int) -> "Touching":
+        """All rows, and all rows again for a second round of as many poses."""
+        pose = np.append(self.pose, self.pose + poses)
+        return Touching(pose, *(np.tile(v, 2) for v in (self.pitch, self.sample, self.distance, self.closing)))
+
 
 @dataclass(frozen=True)
 class View:

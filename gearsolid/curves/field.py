@@ -22,7 +22,7 @@ _STAND_IN = 2e-9
 _SAMPLES_PER_PITCH = 96
 _MOST_SAMPLES_PER_PITCH = 5000
 _FEWEST_PER_SPAN = 9
-_NEWTON_STEPS = 4
+_NEWTON_STEPS = 3
 
 
 @dataclass(frozen=True)
@@ -135,13 +135,17 @@ class Field:
             Signed distances [mm] and unit directions, shape (n,). Close to the boundary the error of the distance is of
             third order in the sample spacing.
         """
+        distance, index, _, back = self._nearest_sample(z)
+        return distance, -1j * self.cloud.tangent[index] * back
+
+    def _nearest_sample(self, z: Points) -> tuple[Reals, Integers, Points, Points]:
+        """Rough signed distances, the samples they are from, z in the frame of those samples, and the factors back."""
         if z.size == 0:
-            return np.empty(0), np.empty(0, dtype=complex)
+            return np.empty(0), np.empty(0, dtype=np.int64), z, z
         index, local, back = self._candidates(z)
         distance = _osculating_distance(self.cloud, index, local)
         best = np.arange(z.size), np.argmin(np.abs(distance), axis=1)
-        distance, index, back = distance[best], index[best], back[best]
-        return distance, -1j * self.cloud.tangent[index] * back
+        return distance[best], index[best], local[best], back[best]
 
     def near(self, z: Points) -> Near:
         """Nearest boundary points.
@@ -149,18 +153,14 @@ class Field:
         Args:
             z: query points [mm], shape (n,).
         """
-        index, local, back = self._candidates(np.asarray(z, dtype=complex))
+        _, index, local, back = self._nearest_sample(z)
         cloud = self.cloud
-        ahead = np.real((local - cloud.point[index]) * np.conj(cloud.tangent[index])) >= 0
-        start = np.clip(np.where(ahead, index, index - 1), index - (cloud.edge[index] != -1), index)
-        start = np.where((cloud.edge[index] == 1) & (start == index), index - 1, start)
-        fraction = self._foot(local, start, (start != index) * 1.0)
+        along = np.real((local - cloud.point[index]) * np.conj(cloud.tangent[index]))
+        start = index - ((along < 0) & (cloud.edge[index] != -1) | (cloud.edge[index] == 1))
+        run = np.abs(cloud.point[start + 1] - cloud.point[start])
+        fraction = self._foot(local, start, np.clip((start != index) + along / run, 0.0, 1.0))
         foot, slope, _ = self._along(start, fraction)
         gap = np.abs(local - foot)
-        best = np.arange(gap.shape[0]), np.argmin(gap, axis=1)
-        local, back, start, fraction, foot, slope, gap = (
-            v[best] for v in (local, back, start, fraction, foot, slope, gap)
-        )
         hand = self._hand(start, fraction, slope)
         normal = -1j * hand / np.abs(hand)
         sign = np.where(np.real((local - foot) * np.conj(normal)) < 0, -1.0, 1.0)
