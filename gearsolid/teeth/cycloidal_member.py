@@ -13,10 +13,7 @@ from gearsolid.curves.roulette import Trace
 from gearsolid.errors import DesignError
 from gearsolid.teeth.cycloid import Cycloid
 from gearsolid.teeth.root import Foot, Root
-from gearsolid.teeth.toothed import mirrored, pitch_pieces
-
-# A tooth this near to its point, as a share of the module, is drawn pointed.
-POINTED = 1e-6
+from gearsolid.teeth.toothed import POINTED, mirrored, pitch_pieces
 
 
 @dataclass(frozen=True)
@@ -93,11 +90,11 @@ class CycloidalMember(ABC):
 
     def _check_flank(self) -> None:
         flank = self.flank
-        if self.dedendum >= min(flank.reach, self.reference_radius):
+        deepest = min(flank.reach, self.reference_radius)
+        if self.dedendum > deepest - POINTED * self.module:
             raise DesignError(
-                f"the dedendum is {self.dedendum:g} mm; this describing circle reaches "
-                f"{min(flank.reach, self.reference_radius):.6g} mm from the reference circle: lower the dedendum or "
-                "bring the dedendum circle nearer to half the reference radius"
+                f"the dedendum is {self.dedendum:g} mm; this describing circle reaches {deepest:.6g} mm from the "
+                "reference circle: lower the dedendum or bring the dedendum circle nearer to half the reference radius"
             )
         half = self._half(flank, flank.roll(-self.hand * self.dedendum))
         if half >= self.pitch / 2:

@@ -13,9 +13,8 @@ from gearsolid.curves.loops import pins
 from gearsolid.curves.outline import Outline, Piece
 from gearsolid.curves.primitives import Arc, Segment
 from gearsolid.errors import DesignError
-from gearsolid.teeth.cycloidal_member import POINTED
 from gearsolid.teeth.root import Foot, RootCircle
-from gearsolid.teeth.toothed import mirrored, pitch_pieces
+from gearsolid.teeth.toothed import POINTED, mirrored, pitch_pieces
 from gearsolid.teeth.trundle_flank import TrundleFlank
 
 

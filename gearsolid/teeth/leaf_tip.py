@@ -8,7 +8,7 @@ from math import acos, asin, cos, degrees, isinf, pi, sin, tan
 from gearsolid.curves.outline import Piece
 from gearsolid.curves.primitives import Arc
 from gearsolid.errors import DesignError
-from gearsolid.teeth.toothed import mirrored
+from gearsolid.teeth.toothed import POINTED, mirrored
 
 
 class LeafTip(ABC):
@@ -71,6 +71,10 @@ class Ogive(LeafTip):
     def height(self, radius: float, half_angle: float) -> float:
         return self.point - self.cut
 
+    @property
+    def _is_cut(self) -> bool:
+        return self.cut > POINTED * self.point
+
     def _chord(self, radius: float, half_angle: float) -> complex:
         """From the flank's end to the point [mm]."""
         return radius + self.point - radius * exp(-1j * half_angle)
@@ -99,7 +103,7 @@ class Ogive(LeafTip):
         start = phase(chord) - half_sweep - pi / 2
         centre = radius * exp(-1j * half_angle) - self.arc_radius * exp(1j * start)
         end, tip = start + 2 * half_sweep, radius + self.point - self.cut
-        if self.cut > 0:
+        if self._is_cut:
             end = self._angle_at(tip, centre)
             if not start < end:
                 raise DesignError(
@@ -107,7 +111,7 @@ class Ogive(LeafTip):
                 )
         side = (Piece(Arc(centre, self.arc_radius, start, end), "flank"),)
         corner = phase(side[0].curve.end)
-        land = (Piece(Arc(0, tip, corner, -corner), "tip"),) if self.cut > 0 else ()
+        land = (Piece(Arc(0, tip, corner, -corner), "tip"),) if self._is_cut else ()
         return (*side, *land, *mirrored(side))
 
     def _angle_at(self, tip: float, centre: complex) -> float:

@@ -7,6 +7,9 @@ from gearsolid.teeth.root import Foot, Root
 # A land or a root flat narrower than this share of the tooth's size is none.
 NONE = 1e-9
 
+# A tooth this near to its point, as a share of its module or height, is drawn pointed.
+POINTED = 1e-6
+
 
 def mirrored(side: tuple[Piece, ...]) -> tuple[Piece, ...]:
     """The other side of a tooth, in travel order."""
