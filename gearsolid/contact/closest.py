@@ -52,7 +52,7 @@ class Spots:
 
 def around(view: View, spots: Spots, freedom: int) -> Spots:
     """The spots free to slide `freedom` samples either way from where they are, within their smooth span."""
-    span = view.spans[np.floor(spots.place).astype(np.int64)]
+    span = view.probe.spans[np.floor(spots.place).astype(np.int64)]
     low, high = np.maximum(spots.place - freedom, span[:, 0]), np.minimum(spots.place + freedom, span[:, 1])
     return replace(spots, low=low, high=high)
 

@@ -69,7 +69,9 @@ class Touching:
     def repeated(self, poses: int) -> "Touching":
         """All rows, and all rows again for a second round of as many poses."""
         pose = np.append(self.pose, self.pose + poses)
-        return Touching(pose, *(np.tile(v, 2) for v in (self.pitch, self.sample, self.distance, self.closing)))
+        return Touching(
+            pose, np.tile(self.pitch, 2), np.tile(self.sample, 2), np.tile(self.distance, 2), np.tile(self.closing, 2)
+        )
 
 
 @dataclass(frozen=True)
@@ -111,14 +113,6 @@ class View:
     def advancing(self, z: Points, axis: Points) -> Points:
         """Derivative of a probe point z in the target's frame by the input angle [mm/rad]."""
         return 1j * self.probe_rate * (z - axis) - 1j * self.target_rate * z
-
-    @cached_property
-    def spans(self) -> Integers:
-        """First and last sample of the smooth span each probe sample belongs to, shape (n, 2)."""
-        edge = self.probe.cloud.edge
-        first, last = np.flatnonzero(edge == -1), np.flatnonzero(edge == 1)
-        which = np.cumsum(edge == -1) - 1
-        return np.column_stack([first[which], last[which]])
 
     @cached_property
     def _pitch_circle(self) -> tuple[complex, float]:

@@ -22,7 +22,7 @@ _STAND_IN = 2e-9
 _SAMPLES_PER_PITCH = 96
 _MOST_SAMPLES_PER_PITCH = 5000
 _FEWEST_PER_SPAN = 9
-_NEWTON_STEPS = 3
+_NEWTON_STEPS = 4
 
 
 @dataclass(frozen=True)
@@ -112,6 +112,14 @@ class Field:
         swept = np.concatenate([[0.0], np.cumsum(np.angle(z[1:] * np.conj(z[:-1])))])
         return float(np.angle(z[0]) + (swept.min() + swept.max()) / 2)
 
+    @cached_property
+    def spans(self) -> Integers:
+        """First and last sample of the smooth span each sample belongs to, shape (n, 2)."""
+        edge = self.cloud.edge
+        first, last = np.flatnonzero(edge == -1), np.flatnonzero(edge == 1)
+        which = np.cumsum(edge == -1) - 1
+        return np.column_stack([first[which], last[which]])
+
     def fold(self, z: Points) -> Points:
         """Factor that turns each z out of the first pitch to where it stands: z = factor x folded."""
         pitch = self.outline.pitch_angle
@@ -155,10 +163,7 @@ class Field:
         """
         _, index, local, back = self._nearest_sample(z)
         cloud = self.cloud
-        along = np.real((local - cloud.point[index]) * np.conj(cloud.tangent[index]))
-        start = index - ((along < 0) & (cloud.edge[index] != -1) | (cloud.edge[index] == 1))
-        run = np.abs(cloud.point[start + 1] - cloud.point[start])
-        fraction = self._foot(local, start, np.clip((start != index) + along / run, 0.0, 1.0))
+        start, fraction = self._foot(local, index)
         foot, slope, _ = self._along(start, fraction)
         gap = np.abs(local - foot)
         hand = self._hand(start, fraction, slope)
@@ -188,18 +193,23 @@ class Field:
         ddz = 2 * c2 + u * (6 * c3 + u * (12 * c4 + u * (20 * c5)))
         return z, dz, ddz
 
-    def _foot(self, local: Points, start: Integers, u: Reals) -> Reals:
-        """Fractions of the feet on the given quintics, by Newton steps kept between 0 and 1."""
+    def _foot(self, local: Points, index: Integers) -> tuple[Integers, Reals]:
+        """Start samples and fractions of the feet near given samples, by Newton steps within their smooth spans."""
+        first, last = self.spans[index].T
+        place = index.astype(np.float64)
         for _ in range(_NEWTON_STEPS):
-            z, dz, ddz = self._along(start, u)
+            start = np.clip(np.floor(place).astype(np.int64), first, last - 1)
+            z, dz, ddz = self._along(start, place - start)
             away = z - local
             miss = np.real(away * np.conj(dz))
             square = np.abs(dz) ** 2
             slope = square + np.real(away * np.conj(ddz))
             # Beyond the centre of curvature Newton would climb; a plain step along the tangent keeps going downhill.
             slope = np.where(slope > 0.1 * square, slope, square)
-            u = np.clip(u - miss / np.where(slope > 0, slope, 1.0), 0.0, 1.0)
-        return u
+            step = np.clip(-miss / np.where(slope > 0, slope, 1.0), -1.0, 1.0)
+            place = np.clip(place + step, first, last)
+        start = np.clip(np.floor(place).astype(np.int64), first, last - 1)
+        return start, place - start
 
     def _hand(self, start: Integers, fraction: Reals, slope: Points) -> Points:
         cloud = self.cloud
