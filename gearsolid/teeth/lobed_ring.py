@@ -27,7 +27,7 @@ class LobedRing(PinGenerated):
         angular_deg: angle each flank is turned into its lobe about the ring axis [deg].
 
     Raises:
-        DesignError: shortening factor not below 1, undercut, or a size out of range; the message gives the limit.
+        DesignError: shortening factor too near 1, undercut, or a size out of range; the message gives the limit.
     """
 
     hand: ClassVar[int] = -1

@@ -15,6 +15,15 @@ from gearsolid.curves.primitives import Arc
 from gearsolid.errors import DesignError
 from gearsolid.teeth.pin_path import PinPath
 
+# Above this shortening factor the valleys are bent too sharply to be followed; 1 is the theoretical limit.
+MOST_SHORTENING = 0.98
+
+# A smaller angular modification [deg] is none: it would leave arcs too short to draw.
+_NO_TURN = 1e-6
+
+# Places along a flank at which a pin may stop the disc.
+_PLACES = 361
+
 
 @dataclass(frozen=True)
 class PinGenerated:
@@ -33,7 +42,7 @@ class PinGenerated:
         angular_deg: angle each flank is turned into its lobe about the axis [deg].
 
     Raises:
-        DesignError: shortening factor not below 1, undercut, or a size out of range; the message gives the limit.
+        DesignError: shortening factor too near 1, undercut, or a size out of range; the message gives the limit.
     """
 
     lobes: int
@@ -82,12 +91,13 @@ class PinGenerated:
             raise DesignError(
                 f"pin circle radius plus moved distance is {self.path.pin_circle_radius:g} mm; it must be above 0"
             )
-        if not self.shortening < 1:
-            limit = self.path.pin_circle_radius * self.difference / self.pins
+        if not self.shortening <= MOST_SHORTENING:
+            limit = MOST_SHORTENING * self.path.pin_circle_radius * self.difference / self.pins
             raise DesignError(
                 f"eccentricity {self.eccentricity:g} mm x {self.pins} pins / pin circle radius "
                 f"{self.path.pin_circle_radius:g} mm / tooth difference {self.difference} is {self.shortening:.4f}; it "
-                f"must be below 1: take an eccentricity below {limit:.6g} mm"
+                f"must be below 1, where the lobes get cusps, and is drawn up to {MOST_SHORTENING:g} (0.5 to 0.9 is "
+                f"usual): take an eccentricity of {limit:.6g} mm or less"
             )
 
     @property
@@ -148,21 +158,22 @@ class PinGenerated:
 
     @property
     def play_deg(self) -> float:
-        """Angular play of the disc in the ring that the modifications make [deg].
+        """Least angular play of the disc in the ring that the modifications make [deg]; negative where they bind.
 
-        First order, with a pin where it stops the disc first: at zero pressure angle, or at the end of a flank that is
-        trimmed before. With few pins the play measured is up to a few percent more.
+        First order, over all places a pin can have. It is the pin at zero pressure angle that stops the disc, unless
+        its flank is trimmed before or a valley's bottom is left hardly any clearance. With few pins the play measured
+        is up to a few percent more.
 
         Source: geometry of the normal gap at a pin; equidistant and moved distance as in Rao, planetary transmission
         handbook, cycloid chapter (from memory, re-derived).
         """
         path = self.exact_path
-        phase = np.minimum(np.arccos(path.shortening), self._crest)
-        lean = np.sin(phase) / path.stretch(phase)
-        moved = (1 - path.shortening * np.cos(phase)) / path.stretch(phase)
-        closing = (self.equidistant - self.hand * self.moved_distance * moved) / (lean * self.disc_pitch_radius)
-        turned = np.radians(self.angular_deg) * self.reference_radius / self.disc_pitch_radius
-        return float(np.degrees(2 * (closing + turned)))
+        quiet = np.minimum(np.arccos(path.shortening), self._crest)
+        phase = np.append(np.linspace(0, self._crest, _PLACES)[1:-1], quiet)
+        moved = self.hand * self.moved_distance * (1 - path.shortening * np.cos(phase))
+        closing = (self.equidistant * path.stretch(phase) - moved) / (np.sin(phase) * self.disc_pitch_radius)
+        turned = abs(self._turn) * self.reference_radius / self.disc_pitch_radius
+        return float(np.degrees(2 * (np.min(closing) + turned)))
 
     @property
     def radial_clearance(self) -> float:
@@ -170,13 +181,13 @@ class PinGenerated:
         return self.equidistant - self.hand * self.moved_distance
 
     def gap(self, phi_deg: Reals) -> Reals:
-        """Normal gap at a pin after the disc has turned to first contact, to first order in the modifications [mm].
+        """Normal gap at a pin, the pin at zero pressure angle in contact, to first order in the modifications [mm].
 
         Args:
             phi_deg: phase of the pin [deg], any shape; 0 at the bottom of a valley, on the side that carries up to 180.
 
         Returns:
-            Gaps [mm], same shape; zero where the pressure angle is zero.
+            Gaps [mm], same shape; zero where the pressure angle is zero, negative where a pin stops the disc before.
         """
         phi, path = np.radians(phi_deg), self.exact_path
         stretch, lean = path.stretch(phi), np.sin(phi)
@@ -187,11 +198,11 @@ class PinGenerated:
     @cached_property
     def _crest(self) -> float:
         """Phase at which a flank ends [rad]: at the crest of the path, or where it meets the next flank."""
-        if self.difference == 1 and self.angular_deg == 0:
+        if self.difference == 1 and self._turn == 0:
             return pi
         # The polar angle only grows along a flank that is not undercut, so there is one place to find.
         flank = Parallel(self.path.curve(0.0, pi), self.offset)
-        end = pi / self.lobes - np.radians(self.angular_deg)
+        end = pi / self.lobes - abs(self._turn)
 
         def beyond(phase: float) -> float:
             return self.hand * float(np.angle(flank.point(np.asarray(phase)))) - end
@@ -202,12 +213,16 @@ class PinGenerated:
     def _half(self) -> Curve:
         """Flank from the bottom of the valley on the +x axis to the end of the pitch."""
         flank = Parallel(self.path.curve(0.0, self._crest), self.offset)
-        turn = self.hand * np.radians(self.angular_deg)
-        return Turned(flank, complex(np.exp(1j * turn))) if turn else flank
+        return Turned(flank, complex(np.exp(1j * self._turn))) if self._turn else flank
+
+    @property
+    def _turn(self) -> float:
+        """Turn of the half of a pitch that follows the valley on the +x axis [rad]."""
+        return float(self.hand * np.radians(self.angular_deg)) if self.angular_deg > _NO_TURN else 0.0
 
     @cached_property
     def outline(self) -> Outline:
         """One pitch, a valley centred on the +x axis; clockwise for a ring."""
-        turn = self.hand * np.radians(self.angular_deg)
+        turn = self._turn
         bottom = (Piece(Arc(0, self.root_radius, -turn, turn), "root"),) if turn else ()
         return Outline((Piece(Mirrored(self._half), "flank"), *bottom, Piece(self._half, "flank")), self.lobes)

@@ -28,7 +28,7 @@ class CycloidDisc(PinGenerated):
         angular_deg: angle each flank is turned into its lobe about the disc axis [deg].
 
     Raises:
-        DesignError: shortening factor not below 1, undercut, or a size out of range; the message gives the limit.
+        DesignError: shortening factor too near 1, undercut, or a size out of range; the message gives the limit.
 
     Source: geometry of the curtate epitrochoid, e.g. Chen, Fang, Li, Wang, Sci. China Ser. E 51(5), 2008, 598-610.
     """
