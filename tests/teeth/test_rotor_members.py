@@ -79,10 +79,12 @@ def test_inset_is_the_distance_from_the_exact_rotor(lobes, inset):
     """Measured to a crowd of points of the exact rotor, also where lobe and space meet in an infinite curvature."""
     exact, inner = LobeRotor(lobes, 40.0).outline, LobeRotor(lobes, 40.0, inset).outline
     crowd = np.concatenate([p.curve.point(p.curve.sample(100_001)) for p in exact.pieces])
+    spacing = np.max(np.abs(np.diff(crowd)))
     crowd = np.concatenate([crowd, crowd * exact.step, crowd / exact.step])
     z = np.concatenate([p.curve.point(p.curve.sample(1000)) for p in inner.pieces])
     depth, _ = cKDTree(np.column_stack([crowd.real, crowd.imag])).query(np.column_stack([z.real, z.imag]))
-    assert depth == pytest.approx(inset, abs=4e-6)
+    assert depth.min() > inset - 1e-9
+    assert depth.max() < inset + spacing**2 / (8 * inset) + 1e-9
     assert inner.area < exact.area
 
 
