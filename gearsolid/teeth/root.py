@@ -19,7 +19,7 @@ FULL_ROUND = float("inf")
 
 _SAMPLES = 65
 
-# What remains of a flank above its fillet counts as nothing below this share.
+# A flank above its fillet counts as nothing when shorter than this share of its distance from the axis.
 _NOTHING = 1e-9
 
 
@@ -109,7 +109,7 @@ class Root(ABC):
         start = float(np.angle(down))
         arc = Arc(centre, radius, start, start - float(np.angle(down / -normal)) % (2 * pi))
         pieces = [Piece(arc, "fillet")]
-        if flank.span[1] - touch > _NOTHING * (flank.span[1] - flank.span[0]):
+        if abs(flank.end - point) > _NOTHING * abs(flank.end):
             pieces.append(Piece(Section(flank, touch, flank.span[1]), "flank"))
         return Foot(tuple(pieces), point)
 

@@ -79,6 +79,7 @@ def sized(kind, teeth, module, face, flank, addendum, dedendum, thinning, fillet
 @given(teeth=st.integers(5, 300), **NUMBERS)
 @example(teeth=6, module=1, face=10, flank=1, addendum=1.3, dedendum=1.8, thinning=0, fillet=inf)
 @example(teeth=12, module=1, face=1, flank=1.3, addendum=1, dedendum=1.3, thinning=0, fillet=0)
+@example(teeth=42, module=1.185, face=1, flank=0.99999, addendum=1, dedendum=0.5, thinning=0, fillet=inf)
 @example(teeth=8, module=1, face=1, flank=0.5, addendum=1, dedendum=1.3, thinning=0.3, fillet=0.3)
 def test_wheels(teeth, module, face, flank, addendum, dedendum, thinning, fillet):
     numbers = (teeth, module, face, flank, addendum, dedendum, thinning, fillet)
