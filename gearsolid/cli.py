@@ -83,7 +83,7 @@ def _parser() -> argparse.ArgumentParser:
 def _code(result: "RollResult") -> int:
     from gearsolid.contact.result import Verdict
 
-    return BINDS if result.verdict is Verdict.BINDS else ROLLS
+    return ROLLS if result.verdict in (Verdict.ROLLS, Verdict.TOUCHES) else BINDS
 
 
 def _roll(chosen: argparse.Namespace) -> int:

@@ -62,17 +62,21 @@ class Sweep:
     pitch_length: float
 
 
-def sweep(e: Engagement, poses: int = POSES) -> Sweep:
-    """Samples of both outlines near each other at evenly spread input angles of one pitch.
+def sweep(e: Engagement) -> Sweep:
+    """Samples of both outlines near each other at evenly spread input angles of one pitch."""
+    return sweep_at(e, e.period * np.arange(POSES) / POSES)
+
+
+def sweep_at(e: Engagement, psi: Reals) -> Sweep:
+    """Samples of both outlines near each other at the given input angles [rad], shape (m,).
 
     The search widens until it finds something, so parts that stay far apart get a distance too.
     """
-    psi = e.period * np.arange(poses) / poses
     pitch = min(o.pitch_angle * o.r_max for o in (e.a, e.b))
     margin, slack = 0.05 * pitch, _SLACK * pitch
     views, overlapping = clear_views(e), False
     while True:
-        seen = tuple((v, v.sweep(psi, np.zeros(poses), margin, slack)) for v in views)
+        seen = tuple((v, v.sweep(psi, np.zeros_like(psi), margin, slack)) for v in views)
         found = min((float(t.distance.min(initial=np.inf)) for _, t in seen), default=np.inf)
         if found < 0 and not overlapping:
             views, overlapping = overlap_views(e), True
@@ -99,23 +103,45 @@ def lowest_rows(t: Touching, poses: int, pitch_length: float) -> Integers:
     return rows[rank < _REFINED]
 
 
-def least_distance(e: Engagement, s: Sweep) -> tuple[Least, Reals]:
-    """The least distance over the pitch, and the least distance at each of the sweep's angles.
+def least_distance(e: Engagement, s: Sweep, step: float) -> tuple[Least, Reals]:
+    """The least distance near the angles of a sweep, and the least distance at each of them.
+
+    Args:
+        e: the engagement.
+        s: its sweep.
+        step: how far from a sampled angle to look for less [rad].
 
     Returns:
         The exact minimum, refined between the sampled angles; and the curve of least distances [mm], shape (m,).
     """
-    per_pose = np.full(s.psi.size, np.inf)
-    best: list[tuple[View, Spots, Measure]] = []
+    followed = _slid(s)
+    per_pose = _per_pose(s, followed)
+    results = [_between_poses(e, view, spots, exact, step, s.pitch_length) for view, spots, exact, _ in followed]
+    return min(results, key=lambda r: r.distance), per_pose
+
+
+def distances_at(e: Engagement, psi: Reals) -> Reals:
+    """Least distance [mm] at each of the given input angles [rad], shape (m,)."""
+    s = sweep_at(e, psi)
+    return _per_pose(s, _slid(s))
+
+
+def _slid(s: Sweep) -> list[tuple[View, Spots, Measure, Integers]]:
+    """For each view its lowest samples slid to exact places, and the pose each belongs to."""
+    found = []
     for view, touching in s.seen:
         rows = lowest_rows(touching, s.psi.size, s.pitch_length)
         if rows.size:
-            spots, exact = slide(view, spots_at(view, touching, rows, s.psi, np.zeros_like(s.psi), 2))
-            np.minimum.at(per_pose, touching.pose[rows], exact.near.distance)
-            best.append((view, spots, exact))
-    step = e.period / s.psi.size
-    results = [_between_poses(e, view, spots, exact, step, s.pitch_length) for view, spots, exact in best]
-    return min(results, key=lambda r: r.distance), per_pose
+            spots = spots_at(view, touching, rows, s.psi, np.zeros_like(s.psi), 2)
+            found.append((view, *slide(view, spots), touching.pose[rows]))
+    return found
+
+
+def _per_pose(s: Sweep, followed: list[tuple[View, Spots, Measure, Integers]]) -> Reals:
+    least = np.full(s.psi.size, np.inf)
+    for _, _, exact, pose in followed:
+        np.minimum.at(least, pose, exact.near.distance)
+    return least
 
 
 def _between_poses(e: Engagement, view: View, spots: Spots, exact: Measure, step: float, pitch_length: float) -> Least:

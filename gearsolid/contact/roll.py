@@ -5,9 +5,10 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from gearsolid.contact.clearance import least_distance, sweep
+from gearsolid.contact.clearance import least_distance, sweep, sweep_at
 from gearsolid.contact.path import contact_ratio
 from gearsolid.contact.play import window
+from gearsolid.contact.proof import prove
 from gearsolid.contact.result import Contact, RollResult, Verdict
 from gearsolid.errors import DesignError
 from gearsolid.pairs.engagement import Engagement
@@ -51,16 +52,19 @@ def roll_engagements(engagements: Iterable[Engagement], tolerance: float = TOLER
 
 def _contact(e: Engagement, tolerance: float) -> Contact:
     s = sweep(e)
-    least, curve = least_distance(e, s)
-    verdict = Verdict.BINDS if least.distance < -tolerance else Verdict.ROLLS
-    if abs(least.distance) <= tolerance:
-        verdict = Verdict.TOUCHES
+    step = e.period / s.psi.size
+    least, curve = least_distance(e, s, step)
+    proof = prove(e, s.psi, curve, least.distance)
+    if proof.lowest < least.distance:
+        closer = sweep_at(e, np.array([proof.lowest_psi]))
+        least = min(least, least_distance(e, closer, proof.step)[0], key=lambda found: found.distance)
     frame = complex(np.exp(1j * e.frame_rate * least.psi))
     found = Contact(
         e.name_a,
         e.name_b,
-        verdict,
+        _verdict(least.distance, proof.bound, tolerance),
         least.distance,
+        min(proof.bound, least.distance),
         float(np.degrees(least.psi)),
         least.place * frame,
         least.roles,
@@ -83,14 +87,22 @@ def _contact(e: Engagement, tolerance: float) -> Contact:
     way = -int(np.sign(e.rate_b))
     driven = freedom.ahead if way > 0 else freedom.back
     play = float(freedom.width.min())
+    found = replace(found, play_angle=float(np.degrees(play)), play=play * radius, plays=np.degrees(freedom.width))
+    if found.verdict is Verdict.BINDS:
+        return found
     return replace(
         found,
-        play_angle=float(np.degrees(play)),
-        play=play * radius,
         contact_ratio=contact_ratio(e, s, driven, way, radius),
         transmission_error=float(np.degrees(np.ptp(driven))),
-        plays=np.degrees(freedom.width),
     )
+
+
+def _verdict(least: float, bound: float, tolerance: float) -> Verdict:
+    if least < -tolerance:
+        return Verdict.BINDS
+    if least <= tolerance:
+        return Verdict.TOUCHES
+    return Verdict.ROLLS if bound > 0 else Verdict.UNPROVEN
 
 
 @dataclass(frozen=True)

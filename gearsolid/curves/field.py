@@ -196,7 +196,7 @@ class Field:
     def _foot(self, local: Points, index: Integers) -> tuple[Integers, Reals]:
         """Start samples and fractions of the feet near given samples, by Newton steps within their smooth spans."""
         first, last = self.spans[index].T
-        place = index.astype(np.float64)
+        place = np.clip(index + self._first_guess(local, index), first, last)
         for _ in range(_NEWTON_STEPS):
             start = np.clip(np.floor(place).astype(np.int64), first, last - 1)
             z, dz, ddz = self._along(start, place - start)
@@ -210,6 +210,20 @@ class Field:
             place = np.clip(place + step, first, last)
         start = np.clip(np.floor(place).astype(np.int64), first, last - 1)
         return start, place - start
+
+    def _first_guess(self, local: Points, index: Integers) -> Reals:
+        """How far the feet lie from given samples, in samples, going by the tangents there.
+
+        At a cusp the way walked grows with the square of the parameter, and Newton started on it would never leave.
+        """
+        cloud, stop = self.cloud, self.cloud.point.size - 1
+        along = np.real((local - cloud.point[index]) * np.conj(cloud.tangent[index]))
+        side = np.where(along < 0, -1, 1)
+        run = np.abs(cloud.point[np.clip(index + side, 0, stop)] - cloud.point[index])
+        share = np.minimum(np.abs(along) / np.where(run > 0, run, 1.0), 1.0)
+        start = np.minimum(index, stop - 1)
+        still = np.abs(self._along(start, (index - start) * 1.0)[1]) < 1e-6 * run
+        return side * np.where(still, np.sqrt(share), share)
 
     def _hand(self, start: Integers, fraction: Reals, slope: Points) -> Points:
         cloud = self.cloud

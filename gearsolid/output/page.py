@@ -77,6 +77,7 @@ def _figures(report: Report, machine: Machine) -> str:
         ("Ratio, input to output", ratio_text(report.ratio), ""),
         ("Working centre distance", f"{report.centre_distance:.4f}", "mm"),
         ("Least clearance", f"{report.contacts[0].clearance:.4f}", "mm"),
+        ("Proven at every angle", f"{min(c.proven for c in report.contacts):.4f}", "mm"),
     ]
     if plays:
         rows.append(("Least play at a pitch circle", f"{min(plays):.4f}", "mm"))

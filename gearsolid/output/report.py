@@ -35,9 +35,10 @@ class ContactRecord(_Record):
 
     part_a: str = Field(description="name of the first part")
     part_b: str = Field(description="name of the second part")
-    verdict: Verdict = Field(description="rolls, touches (within the tolerance) or binds")
+    verdict: Verdict = Field(description="rolls, touches (within the tolerance), binds, or unproven")
     clearance: float = Field(description="least distance [mm]; negative is the greatest depth of overlap")
-    input_angle: float = Field(description="input angle where it occurs [deg]")
+    proven: float = Field(description="the two are nowhere nearer than this, at any angle of the revolution [mm]")
+    input_angle: float = Field(description="input angle where the least distance occurs [deg]")
     place: Place = Field(description="where it occurs")
     role_a: str = Field(description="what touches there on the first part: flank, tip, root, fillet, pin or hole")
     role_b: str = Field(description="what touches there on the second part")
@@ -100,6 +101,7 @@ def contact_record(contact: Contact) -> ContactRecord:
         part_b=contact.name_b,
         verdict=contact.verdict,
         clearance=contact.clearance,
+        proven=contact.proven,
         input_angle=contact.input_angle,
         place=Place(x=contact.place.real, y=contact.place.imag),
         role_a=contact.roles[0],

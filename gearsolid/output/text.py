@@ -29,6 +29,8 @@ def roll_text(name: str, machine: Machine, result: RollResult) -> str:
     said = finding(result.worst)
     if result.verdict is Verdict.TOUCHES:
         said += f" Contact within {result.tolerance:g} mm counts as rolling."
+    if result.verdict in (Verdict.ROLLS, Verdict.UNPROVEN):
+        said += f" Between the angles looked at, nothing comes nearer than {result.proven:.4f} mm."
     return "\n".join(
         [
             name,

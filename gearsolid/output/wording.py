@@ -2,7 +2,12 @@
 
 from gearsolid.contact.result import Contact, Verdict
 
-VERDICTS = {Verdict.ROLLS: "It rolls", Verdict.TOUCHES: "It rolls, touching", Verdict.BINDS: "It binds"}
+VERDICTS = {
+    Verdict.ROLLS: "It rolls",
+    Verdict.TOUCHES: "It rolls, touching",
+    Verdict.BINDS: "It binds",
+    Verdict.UNPROVEN: "Not proven to roll",
+}
 
 
 def finding(contact: Contact) -> str:

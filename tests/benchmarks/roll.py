@@ -87,7 +87,9 @@ def main(positions: int) -> None:
     print(f"{'roll test with both outlines made':46}{first * 1e3:12.1f}{first / ours:9.1f}")
     print(f"{f'solids intersected at {positions} positions':46}{solid * 1e3:12.1f}{solid / ours:9.0f}")
     print(f"{f'polygons clipped at {positions} positions':46}{polygon * 1e3:12.1f}{polygon / ours:9.0f}")
-    print(f"least clearance {found.clearance:.7f} mm, play {found.play:.7f} mm, contact ratio {found.contact_ratio:.5f}")
+    print(
+        f"least clearance {found.clearance:.7f} mm, play {found.play:.7f} mm, contact ratio {found.contact_ratio:.5f}"
+    )
 
 
 if __name__ == "__main__":
