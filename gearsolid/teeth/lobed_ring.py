@@ -25,6 +25,7 @@ class LobedRing(PinGenerated):
         moved_distance: amount the profile is generated with a larger pin circle [mm]; positive gives play.
         difference: tooth difference [-]; with 2 the tips are trimmed where the two traces of the pins cross.
         angular_deg: angle each flank is turned into its lobe about the ring axis [deg].
+        relief: step back of the flank at root and tip; None lets pins touch it everywhere.
 
     Raises:
         DesignError: shortening factor too near 1, undercut, or a size out of range; the message gives the limit.

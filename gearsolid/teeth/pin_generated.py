@@ -14,6 +14,7 @@ from gearsolid.curves.parallel import Parallel
 from gearsolid.curves.primitives import Arc
 from gearsolid.errors import DesignError
 from gearsolid.teeth.pin_path import PinPath
+from gearsolid.teeth.relief import Relief, RelievedParallel
 
 # Above this shortening factor the valleys are bent too sharply to be followed; 1 is the theoretical limit.
 MOST_SHORTENING = 0.98
@@ -40,6 +41,7 @@ class PinGenerated:
         moved_distance: amount the profile is generated with a larger pin circle [mm].
         difference: tooth difference, pins less lobes or lobes less pins [-]; lobe tips are trimmed from 2 on.
         angular_deg: angle each flank is turned into its lobe about the axis [deg].
+        relief: step back of the flank at root and tip; None lets pins touch it everywhere.
 
     Raises:
         DesignError: shortening factor too near 1, undercut, or a size out of range; the message gives the limit.
@@ -53,6 +55,7 @@ class PinGenerated:
     moved_distance: float = 0.0
     difference: int = 1
     angular_deg: float = 0.0
+    relief: Relief | None = None
 
     # +1 for a disc inside the pins, -1 for a ring outside them.
     hand: ClassVar[int] = 1
@@ -60,15 +63,27 @@ class PinGenerated:
     def __post_init__(self) -> None:
         self._check_counts()
         self._check_sizes()
-        if not self.offset < self.undercut_limit:
+        if not self.offset + self._relief_depth < self.undercut_limit:
             raise DesignError(
-                f"pin radius {self.offset:.6g} mm (with the equidistant amount) undercuts the lobes; the smallest "
-                f"convex radius of the pin path is {self.undercut_limit:.6g} mm: take smaller pins or less eccentricity"
+                f"pin radius {self.offset + self._relief_depth:.6g} mm (with equidistant amount and relief) undercuts "
+                f"the lobes; the smallest convex radius of the pin path is {self.undercut_limit:.6g} mm: take smaller "
+                "pins or less eccentricity"
             )
         if not 0 <= self.angular_deg < 45 / self.lobes:
             raise DesignError(
                 f"flanks are turned by {self.angular_deg:g} deg into their lobes; the angle must be 0 or more and "
                 f"below an eighth of a pitch, {45 / self.lobes:.4g} deg"
+            )
+
+        if self.relief:
+            self._check_relief(self.relief)
+
+    def _check_relief(self, relief: Relief) -> None:
+        radii = np.abs(self._half.point(self._half.sample(_PLACES)))
+        if np.any(self.hand * np.diff(radii) <= 0):
+            raise DesignError(
+                f"a relief of {relief.depth:g} mm outside a working arc from {relief.first_deg:g} to "
+                f"{relief.last_deg:g} deg dents the lobes: make it shallower, or begin the arc later and end it earlier"
             )
 
     def _check_counts(self) -> None:
@@ -145,7 +160,15 @@ class PinGenerated:
 
     @property
     def root_radius(self) -> float:
-        return self.path.pin_circle_radius - self.hand * (self.eccentricity + self.offset)
+        return self.path.pin_circle_radius - self.hand * (self.eccentricity + self.offset + self._relief_depth)
+
+    @property
+    def _relief_depth(self) -> float:
+        return self.relief.depth if self.relief else 0.0
+
+    def _relieved(self, phase: Reals) -> Reals:
+        """Relief at phases from 0 to pi [rad], in mm."""
+        return self.relief.amount(phase) if self.relief else np.zeros(np.shape(phase))
 
     @cached_property
     def tip_radius(self) -> float:
@@ -171,14 +194,15 @@ class PinGenerated:
         quiet = np.minimum(np.arccos(path.shortening), self._crest)
         phase = np.append(np.linspace(0, self._crest, _PLACES)[1:-1], quiet)
         moved = self.hand * self.moved_distance * (1 - path.shortening * np.cos(phase))
-        closing = (self.equidistant * path.stretch(phase) - moved) / (np.sin(phase) * self.disc_pitch_radius)
+        normal = (self.equidistant + self._relieved(phase)) * path.stretch(phase) - moved
+        closing = normal / (np.sin(phase) * self.disc_pitch_radius)
         turned = abs(self._turn) * self.reference_radius / self.disc_pitch_radius
         return float(np.degrees(2 * (np.min(closing) + turned)))
 
     @property
     def radial_clearance(self) -> float:
         """Gap the modifications leave at a valley's bottom, the disc in the middle of its play [mm]."""
-        return self.equidistant - self.hand * self.moved_distance
+        return self.equidistant + self._relief_depth - self.hand * self.moved_distance
 
     def gap(self, phi_deg: Reals) -> Reals:
         """Normal gap at a pin, the pin at zero pressure angle in contact, to first order in the modifications [mm].
@@ -192,7 +216,8 @@ class PinGenerated:
         phi, path = np.radians(phi_deg), self.exact_path
         stretch, lean = path.stretch(phi), np.sin(phi)
         moved = (1 - path.shortening * np.cos(phi) - path.quietest * lean) / stretch
-        gap: Reals = self.equidistant * (1 - lean / stretch) - self.hand * self.moved_distance * moved
+        relieved = self._relieved(np.abs(np.angle(np.exp(1j * phi))))
+        gap: Reals = self.equidistant * (1 - lean / stretch) - self.hand * self.moved_distance * moved + relieved
         return gap
 
     @cached_property
@@ -201,7 +226,7 @@ class PinGenerated:
         if self.difference == 1 and self._turn == 0:
             return pi
         # The polar angle only grows along a flank that is not undercut, so there is one place to find.
-        flank = Parallel(self.path.curve(0.0, pi), self.offset)
+        flank = self._flank(pi)
         end = pi / self.lobes - abs(self._turn)
 
         def beyond(phase: float) -> float:
@@ -209,10 +234,15 @@ class PinGenerated:
 
         return float(brentq(beyond, 0.0, pi, xtol=1e-15))
 
+    def _flank(self, last: float) -> Curve:
+        """Flank from the bottom of the valley to a phase [rad], not turned."""
+        path = self.path.curve(0.0, last)
+        return RelievedParallel(path, self.offset, self.relief) if self.relief else Parallel(path, self.offset)
+
     @cached_property
     def _half(self) -> Curve:
         """Flank from the bottom of the valley on the +x axis to the end of the pitch."""
-        flank = Parallel(self.path.curve(0.0, self._crest), self.offset)
+        flank = self._flank(self._crest)
         return Turned(flank, complex(np.exp(1j * self._turn))) if self._turn else flank
 
     @property

@@ -17,6 +17,7 @@ from gearsolid.pairs.engagement import engage
 from gearsolid.pairs.motion import Motion
 from gearsolid.teeth.lobed_ring import LobedRing, PinDisc
 from gearsolid.teeth.pinwheel import CycloidDisc, PinRing
+from gearsolid.teeth.relief import Relief
 
 BODIES = {
     "disc": CycloidDisc(29, 0.8, 30.0, 1.5),
@@ -109,6 +110,30 @@ def test_angular_modification_with_clearance_rolls_with_its_play(body):
     assert both.play_deg * share * (1 - 1e-4) < contact.play_angle < 1.05 * both.play_deg * share
 
 
+@body
+def test_relieved_body_touches_on_its_working_arc_only(body):
+    """No play and no transmission error as before, yet room at root and tip."""
+    relieved = replace(body, relief=Relief(0.01 * body.pin_radius, 40.0, 140.0))
+    contact, before = rolled(relieved), rolled(body)
+    assert abs(contact.play_angle) < 1e-6 > contact.transmission_error
+    assert relieved.play_deg == pytest.approx(0, abs=1e-12)
+    assert relieved.radial_clearance == pytest.approx(0.01 * body.pin_radius)
+    assert contact.contact_ratio < before.contact_ratio
+    if body.difference == 1:
+        assert contact.contact_ratio == pytest.approx(100 / 360 * body.pins, abs=0.3)
+
+
+def test_relief_gives_the_gap_it_promises():
+    disc = replace(BODIES["disc"], relief=Relief(2e-4, 30.0, 120.0))
+    phase = np.array([0.0, 15.0, 30.0, 75.0, 120.0, 150.0, 179.0])
+    found = np.array([gaps(disc, -np.radians(phi), 0.0)[0] for phi in phase])
+    # Nearest point and point along the normal differ by the square of the relief's slope.
+    assert found == pytest.approx(disc.gap(phase), abs=1e-6)
+    assert found[0] == pytest.approx(2e-4, abs=1e-8)
+    assert np.max(np.abs(found[2:5])) < 1e-8
+    assert np.all(found <= disc.gap(phase) + 1e-7)
+
+
 @pytest.mark.parametrize(
     ("equidistant", "moved"), [(1e-4, 0.0), (0.0, -1e-4), (2e-4, 1e-4), (1e-4, 1e-4)], ids=lambda v: f"{v:g}"
 )
@@ -152,13 +177,14 @@ share = st.floats(-0.2, 0.2)
     equidistant=st.one_of(st.just(0.0), share),
     moved=st.one_of(st.just(0.0), share),
     turned=st.one_of(st.just(0.0), st.floats(0, 0.3)),
+    relief=st.one_of(st.none(), st.tuples(st.floats(1e-4, 0.2), st.floats(1, 90), st.floats(60, 179))),
 )
-@example(CycloidDisc, 2, 1, 0.98, 10.0, 0.01, 0.0, 0.0, 0.0)
-@example(CycloidDisc, 3, 1, 0.5, 1.0, 0.5, 0.0, 0.0, 1e-146)
-@example(CycloidDisc, 3, 2, 0.98, 10.0, 0.05, 0.0, 0.0, 0.2)
-@example(LobedRing, 3, 1, 0.98, 235.0, 0.1, 0.0, 0.0, 0.12)
+@example(CycloidDisc, 2, 1, 0.98, 10.0, 0.01, 0.0, 0.0, 0.0, None)
+@example(CycloidDisc, 3, 1, 0.5, 1.0, 0.5, 0.0, 0.0, 1e-146, None)
+@example(CycloidDisc, 3, 2, 0.98, 10.0, 0.05, 0.0, 0.0, 0.2, None)
+@example(LobedRing, 3, 1, 0.98, 235.0, 0.1, 0.0, 0.0, 0.12, (0.1, 30, 140))
 def test_outline_is_simple_or_the_limit_is_named(
-    kind, lobes, difference, shortening, size, pin, equidistant, moved, turned
+    kind, lobes, difference, shortening, size, pin, equidistant, moved, turned, relief
 ):
     pins = max(lobes + kind.hand * difference, 1)
     radius = pin * size
@@ -172,6 +198,7 @@ def test_outline_is_simple_or_the_limit_is_named(
             moved * radius,
             difference,
             turned * 180 / lobes,
+            Relief(relief[0] * radius, *relief[1:]) if relief else None,
         )
     except DesignError as refusal:
         assert re.search(r"\d", str(refusal))
@@ -196,6 +223,8 @@ REFUSALS = {
     "one lobe": ({"lobes": 1}, "above it"),
     "no difference": ({"difference": 0}, "1 or more"),
     "half a lobe": ({"lobes": 29.5}, "whole number"),
+    "relief too steep": ({"relief": Relief(0.3, 40, 170)}, "0.3 mm"),
+    "relief makes the pins too large": ({"relief": Relief(1.42, 40, 120)}, "2.91817 mm"),
     "flanks turned outwards": ({"angular_deg": -0.1}, "0 or more"),
     "flanks turned too far": ({"angular_deg": 2.0}, "1.552 deg"),
 }
@@ -205,6 +234,15 @@ REFUSALS = {
 def test_refusal(change, words):
     with pytest.raises(DesignError, match=re.escape(words)):
         replace(BODIES["disc"], **change)
+
+
+@pytest.mark.parametrize(
+    ("sizes", "words"),
+    [((0.0, 40, 120), "above 0"), ((0.1, 120, 40), "120 to 40 deg"), ((0.1, 0, 40), "begin above 0")],
+)
+def test_refused_relief(sizes, words):
+    with pytest.raises(DesignError, match=words):
+        Relief(*sizes)
 
 
 def test_just_below_the_undercut_limit_is_allowed_and_sharp():
