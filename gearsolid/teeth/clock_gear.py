@@ -2,7 +2,7 @@
 
 from dataclasses import dataclass
 from functools import cached_property
-from math import isfinite, pi
+from math import degrees, isfinite, pi
 
 import numpy as np
 
@@ -58,6 +58,12 @@ class ClockGear:
             )
         if not self.root_fillet >= 0:
             raise DesignError(f"root_fillet is {self.root_fillet:g} mm; it must be 0 or more")
+        widest = self.tip.widest(self.reference_radius, self._half_angle)
+        if widest >= pi / self.teeth:
+            raise DesignError(
+                f"the top of a tooth bulges to {degrees(widest):.4g} deg on either side; {self.teeth} teeth leave it "
+                f"{180 / self.teeth:.4g} deg: take larger arcs or thinner teeth"
+            )
         _ = self.outline
 
     @property

@@ -76,7 +76,7 @@ class CycloidalMember(ABC):
     def _check_face(self) -> None:
         face, most = self.face, self.pointed_addendum
         if self.addendum > most + POINTED * self.module:
-            reason = "the tooth is pointed" if face.lean(pi) * self.hand > 0 else "its describing circle ends"
+            reason = "the tooth is pointed" if self._pointed_roll < pi else "its describing circle ends"
             raise DesignError(
                 f"the addendum is {self.addendum:g} mm, but {reason} at {most:.6g} mm: lower it (clock practice for "
                 f"pointed teeth: {0.95 * most:.4g} mm), thin the tooth less or take another addendum circle"

@@ -3,7 +3,7 @@
 from abc import ABC, abstractmethod
 from cmath import exp, phase
 from dataclasses import dataclass
-from math import acos, asin, cos, degrees, isinf, pi, sin, tan
+from math import acos, asin, cos, degrees, isinf, pi, tan
 
 from gearsolid.curves.outline import Piece
 from gearsolid.curves.primitives import Arc
@@ -17,6 +17,10 @@ class LeafTip(ABC):
     @abstractmethod
     def height(self, radius: float, half_angle: float) -> float:
         """Addendum [mm] on a reference circle of `radius` [mm], half the tooth taking `half_angle` [rad]."""
+
+    @abstractmethod
+    def widest(self, radius: float, half_angle: float) -> float:
+        """Half the angle that the top takes at the axis [rad]; more than `half_angle` where its arcs bulge."""
 
     @abstractmethod
     def crown(self, radius: float, half_angle: float) -> tuple[Piece, ...]:
@@ -34,6 +38,9 @@ class RoundTip(LeafTip):
     def height(self, radius: float, half_angle: float) -> float:
         return radius * (1 / cos(half_angle) + tan(half_angle) - 1)
 
+    def widest(self, radius: float, half_angle: float) -> float:
+        return half_angle
+
     def crown(self, radius: float, half_angle: float) -> tuple[Piece, ...]:
         turn = pi / 2 + half_angle
         return (Piece(Arc(radius / cos(half_angle), radius * tan(half_angle), -turn, turn), "flank"),)
@@ -43,7 +50,8 @@ class RoundTip(LeafTip):
 class Ogive(LeafTip):
     """Two equal arcs that meet in a point on the tooth's centre line.
 
-    Their direction is free at the reference circle, so there is a small kink between flank and arc.
+    Their direction is free at the reference circle, so there is a small kink between flank and arc; where it is
+    negative the arcs bulge over the flanks.
 
     Args:
         point: height of the point above the reference circle [mm].
@@ -96,13 +104,23 @@ class Ogive(LeafTip):
             chord = self._chord(radius, half_angle)
         return degrees(phase(chord) + half_angle - self._half_sweep(chord))
 
-    def crown(self, radius: float, half_angle: float) -> tuple[Piece, ...]:
+    def widest(self, radius: float, half_angle: float) -> float:
+        if self.kink_deg(radius, radius * half_angle) >= 0:
+            return half_angle
+        centre, _, _ = self._lower_arc(radius, half_angle)
+        return asin(min(1.0, self.arc_radius / abs(centre))) - phase(centre)
+
+    def _lower_arc(self, radius: float, half_angle: float) -> tuple[complex, float, float]:
+        """Centre [mm] and end angles [rad] of the uncut arc on the side of negative angle."""
         chord = self._chord(radius, half_angle)
-        self._check(chord, half_angle)
         half_sweep = self._half_sweep(chord)
         start = phase(chord) - half_sweep - pi / 2
-        centre = radius * exp(-1j * half_angle) - self.arc_radius * exp(1j * start)
-        end, tip = start + 2 * half_sweep, radius + self.point - self.cut
+        return radius * exp(-1j * half_angle) - self.arc_radius * exp(1j * start), start, start + 2 * half_sweep
+
+    def crown(self, radius: float, half_angle: float) -> tuple[Piece, ...]:
+        self._check(self._chord(radius, half_angle))
+        centre, start, end = self._lower_arc(radius, half_angle)
+        tip = radius + self.point - self.cut
         if self._is_cut:
             end = self._angle_at(tip, centre)
             if not start < end:
@@ -119,13 +137,11 @@ class Ogive(LeafTip):
         cosine = (tip**2 - abs(centre) ** 2 - self.arc_radius**2) / (2 * abs(centre) * self.arc_radius)
         return phase(centre) - acos(max(-1.0, min(1.0, cosine)))
 
-    def _check(self, chord: complex, half_angle: float) -> None:
-        """Refuse arcs that would bulge over the flank or dip at the point."""
-        lean = phase(chord)
-        sharpest = min(lean + half_angle, pi / 2 - lean)
-        least = abs(chord) / (2 * sin(sharpest))
+    def _check(self, chord: complex) -> None:
+        """Refuse arcs that would dip at the point."""
+        least = abs(chord) ** 2 / (2 * chord.real)
         if self.arc_radius < least * (1 - 1e-12):
             raise DesignError(
                 f"the arcs of an ogive {self.point:g} mm high have a radius of {self.arc_radius:g} mm; below "
-                f"{least:.6g} mm they bulge over the flanks or dip at the point: take a larger arc radius"
+                f"{least:.6g} mm they dip at the point: take a larger arc radius"
             )
