@@ -12,6 +12,7 @@ from gearsolid.pairs.engagement import engage
 from gearsolid.pairs.line_contact import contact_stress, reduced_modulus
 from gearsolid.pairs.motion import Motion
 from gearsolid.pairs.pin_forces import LeverLaw, ring_pin_loss, roller_force, roller_force_sum
+from gearsolid.pairs.pin_tolerances import PinErrors
 from gearsolid.pairs.reducer import OutputRollers, PinWheelReducer, Stack
 from gearsolid.pairs.reducer_ratios import disc_held, ring_held, two_stage_carrier_held, two_stage_ring_held
 from gearsolid.shop.bore import Bore
@@ -222,7 +223,11 @@ def test_sensitivity_of_play(given, expected):
     computed = {
         "equidistant": ARCSEC * replace(disc, equidistant=small).play_deg,
         "moved_distance": ARCSEC * replace(disc, moved_distance=-small).play_deg,
+        "tangential": ARCSEC * PinErrors(tangential=small).play_deg(disc),
     }
+    assert 2 * PinErrors(pin_radius=-small).play_deg(disc) * ARCSEC == pytest.approx(computed["equidistant"])
+    assert 2 * PinErrors(ring_radius=small).play_deg(disc) * ARCSEC == pytest.approx(computed["moved_distance"])
+    assert PinErrors(eccentricity=small).play_deg(disc) == pytest.approx(0, abs=1e-12)
     assert misses(expected, computed) == []
 
 
