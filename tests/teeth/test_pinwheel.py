@@ -166,7 +166,7 @@ counts = st.integers(2, 60)
 share = st.floats(-0.2, 0.2)
 
 
-@settings(max_examples=150, deadline=None)
+@settings(max_examples=80, deadline=None)
 @given(
     kind=st.sampled_from([CycloidDisc, LobedRing]),
     lobes=counts,
