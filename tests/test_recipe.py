@@ -120,7 +120,7 @@ MISTAKES = {
     "mistyped word": ('fixed = "ring"', 'fixed = "rong"', ['"sun" or "ring" or "carrier"', 'did you mean "ring"?']),
     "mistyped table": ("[sun]", "[sum]", ['did you mean "sun"?', "sun: missing"]),
     "value for a table": ("[ring]", "ring = 3\n[other]", ["ring = 3: must be a table", "other"]),
-    "key without bore": ("bore = 8.0", "", ["sun: a key or a chamfer is given without a bore"]),
+    "key without bore": ("bore = 8.0", "", ["sun: a key, chamfer or fit is given without a bore"]),
     "empty name": ('name = "Pump drive stage"', 'name = ""', ['name = "": must be a text']),
     "two mistakes": (
         "teeth = 18\nface_width = 12.0",
@@ -231,3 +231,24 @@ def test_keys_of_an_unknown_machine():
 def test_the_page_of_recipes_lists_the_keys_as_they_are():
     # To write it anew: Path("recipes/keys.md").write_text(gearsolid.recipe.keys.page())
     assert (RECIPES / "keys.md").read_text(encoding="utf-8") == page()
+
+
+def test_a_fit_names_the_limits_and_the_size_drawn(tmp_path):
+    path = tmp_path / "recipe.toml"
+    path.write_text(STAGE.replace("bore = 12.0 ", 'fit = "H7"\ndrawn = "middle"\nbore = 12.0 '), encoding="utf-8")
+    planet = next(p for p in read_recipe(path).machine.parts if p.name.startswith("planet"))
+    assert planet.body.bore.callout == "⌀ 12 H7 (+0.018 / 0)"
+    assert planet.body.bore.diameter == pytest.approx(12.009)
+
+
+@pytest.mark.parametrize(
+    ("added", "words"),
+    [
+        ('fit = "H7b"', ['planet: no limits are tabulated for a hole of class "H7b"', "known: "]),
+        ('drawn = "middle"', ["planet: ", "add the key fit"]),
+    ],
+    ids=["unknown class", "middle of nothing"],
+)
+def test_a_fit_that_says_nothing_is_refused(tmp_path, added, words):
+    message = refused(tmp_path, STAGE.replace("bore = 12.0 ", f"{added}\nbore = 12.0 "), (DesignError, RecipeError))
+    assert all(w in message for w in words)

@@ -101,6 +101,7 @@ def _write_part(folder: Path, made: Made, solid: cq.Shape) -> PartRecord:
         placed_as=tuple(p.name for p in made.parts),
         width=made.body.width,
         diameter=2 * made.body.outer.r_max,
+        bore=made.body.bore.callout if made.body.bore else None,
         volume=step.volume,
         exact_volume=made.body.volume,
         valid=back.shape.isValid(),

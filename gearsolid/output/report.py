@@ -67,6 +67,7 @@ class PartRecord(_Record):
     placed_as: tuple[str, ...] = Field(description="names of its places in the machine")
     width: float = Field(description="face width [mm]")
     diameter: float = Field(description="largest diameter about the axis [mm]")
+    bore: str | None = Field(description="size of the shaft hole with its fit [mm], or null")
     volume: float = Field(description="volume of the solid read back from STEP [mm3]")
     exact_volume: float = Field(description="volume by Green's theorem on the exact outline [mm3]")
     valid: bool = Field(description="the STEP file read back as one valid solid")

@@ -148,7 +148,7 @@ def part_view(made: Made, index: int) -> str:
     ]
     if body.bore:
         half = body.bore.diameter / 2 * scale
-        bits.append(_dimension_down(cy - half, cy + half, sx, sx - 24, f"⌀ {body.bore.diameter:g}"))
+        bits.append(_dimension_down(cy - half, cy + half, sx, sx - 24, body.bore.callout))
     return "".join(bits) + "</svg>"
 
 

@@ -1,12 +1,14 @@
 """The tables of toothed members."""
 
-from typing import Self
+from typing import Literal, Self
 
 from pydantic import model_validator
 
 from gearsolid.pairs.blank import Blank
 from gearsolid.recipe.table import Table, entry
 from gearsolid.shop.bore import Bore
+from gearsolid.shop.fits import hole_limits
+from gearsolid.shop.keys import key_for_bore
 from gearsolid.teeth.cycloidal import CycloidalGear
 from gearsolid.teeth.internal import InternalGear
 from gearsolid.teeth.involute import InvoluteGear
@@ -18,18 +20,27 @@ class Bored(Table):
     bore: float | None = entry("diameter of the shaft hole; no hole when left out", "mm", None, gt=0)
     key: bool = entry("whether the bore has the keyway that ISO/R 773 gives it", default=False)
     chamfer: float = entry("45 degree chamfer at both mouths of the bore", "mm", 0.0, ge=0)
+    fit: str | None = entry("tolerance class of the bore by ISO 286-2, as H7", default=None)
+    drawn: Literal["nominal", "middle"] = entry(
+        "size at which the solid's bore is drawn: the nominal one, or half way between the limits of its fit",
+        default="nominal",
+    )
 
     @model_validator(mode="after")
     def _needs_bore(self) -> Self:
-        if self.bore is None and (self.key or self.chamfer):
-            raise ValueError("a key or a chamfer is given without a bore; add the key bore, the diameter in mm")
+        if self.bore is None and (self.key or self.chamfer or self.fit):
+            raise ValueError("a key, chamfer or fit is given without a bore; add the key bore, the diameter in mm")
+        if self.drawn == "middle" and not self.fit:
+            raise ValueError('drawn = "middle" needs the limits of a fit; add the key fit, as in fit = "H7"')
         return self
 
     def shaft_hole(self) -> Bore | None:
         """The bore the keys describe."""
         if self.bore is None:
             return None
-        return Bore.keyed(self.bore, self.chamfer) if self.key else Bore(self.bore, chamfer=self.chamfer)
+        fit = hole_limits(self.bore, self.fit) if self.fit else None
+        diameter = fit.middle if fit and self.drawn == "middle" else self.bore
+        return Bore(diameter, key_for_bore(self.bore) if self.key else None, self.chamfer, fit)
 
 
 class _Size(Table):

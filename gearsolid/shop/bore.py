@@ -8,6 +8,7 @@ from gearsolid.curves.loops import hole
 from gearsolid.curves.outline import Outline, Piece
 from gearsolid.curves.primitives import Arc, Segment
 from gearsolid.errors import DesignError
+from gearsolid.shop.fits import Limits
 from gearsolid.shop.keys import KeySeat, key_for_bore
 
 
@@ -18,9 +19,11 @@ class Bore:
     A keyway in line with a tooth leaves the root over it thick (common practice; state it on the drawing).
 
     Args:
-        diameter: [mm].
+        diameter: of the solid [mm]; a toleranced bore is drawn at the size chosen here: `fit.nominal`, `fit.middle`, or
+            larger where the process makes holes small.
         key: key seat, or None for a plain hole.
         chamfer: [mm] along the axis and along the radius, at both mouths.
+        fit: limits the made bore must keep, for drawing and report; or None.
 
     Raises:
         DesignError: a size out of range; the message gives the limit.
@@ -29,6 +32,7 @@ class Bore:
     diameter: float
     key: KeySeat | None = None
     chamfer: float = 0.0
+    fit: Limits | None = None
 
     def __post_init__(self) -> None:
         if not self.diameter > 0:
@@ -56,6 +60,11 @@ class Bore:
             DesignError: no key is tabulated for this bore.
         """
         return cls(diameter, key_for_bore(diameter), chamfer)
+
+    @property
+    def callout(self) -> str:
+        """The size as a drawing states it [mm]: that of the fit, or the diameter."""
+        return f"⌀ {self.fit.callout if self.fit else f'{self.diameter:g}'}"
 
     @property
     def radius(self) -> float:

@@ -40,6 +40,7 @@ def html(pair, rolled, name="Two wheels"):
             placed_as=tuple(p.name for p in m.parts),
             width=m.body.width,
             diameter=2 * m.body.outer.r_max,
+            bore=m.body.bore.callout if m.body.bore else None,
             volume=m.body.volume,
             exact_volume=m.body.volume,
             valid=True,
