@@ -252,3 +252,18 @@ def test_a_fit_names_the_limits_and_the_size_drawn(tmp_path):
 def test_a_fit_that_says_nothing_is_refused(tmp_path, added, words):
     message = refused(tmp_path, STAGE.replace("bore = 12.0 ", f"{added}\nbore = 12.0 "), (DesignError, RecipeError))
     assert all(w in message for w in words)
+
+
+def test_keys_come_from_the_table_asked_for_and_may_be_two(tmp_path):
+    path = tmp_path / "recipe.toml"
+    inch = 'key = true\nkey_table = "inch rectangular"\nsecond_key = 180.0\nbore = 12.7 '
+    path.write_text(STAGE.replace("bore = 12.0 ", inch), encoding="utf-8")
+    planet = next(p for p in read_recipe(path).machine.parts if p.name.startswith("planet"))
+    assert (planet.body.bore.key.width, planet.body.bore.key.height) == pytest.approx((25.4 / 8, 25.4 * 3 / 32))
+    assert planet.body.bore.second_key == 180
+
+
+@pytest.mark.parametrize("added", ['key_table = "inch"', "second_key = 90.0"])
+def test_what_a_key_needs_is_refused_without_one(tmp_path, added):
+    message = refused(tmp_path, STAGE.replace("bore = 12.0 ", f"{added}\nbore = 12.0 "))
+    assert "planet: second_key or key_table is given without a key" in message

@@ -15,6 +15,7 @@ from ezdxf.math.triangulation import mapbox_earcut_2d
 from numpy.typing import NDArray
 
 from gearsolid.curves.curve import Points, Reals
+from gearsolid.curves.primitives import Arc
 from gearsolid.output.polygon import chord_parameters, polygons
 from gearsolid.pairs.part import Body
 from gearsolid.shop.bore import Bore
@@ -151,8 +152,8 @@ def _bore_levels(bore: Bore | None, length: float, tol: float) -> list[tuple[Poi
     """Polygons of a shaft hole and their heights above its lower end [mm], all of equally many points."""
     if bore is None:
         return []
-    arc = bore.mouth.pieces[0].curve
-    shares = np.linspace(0, 1, len(chord_parameters(arc, *arc.span, tol)))
+    arcs = [p.curve for p in bore.mouth.pieces if isinstance(p.curve, Arc)]
+    shares = np.linspace(0, 1, max(len(chord_parameters(arc, *arc.span, tol)) for arc in arcs))
     depths = np.linspace(0, bore.chamfer, _cone_levels(bore, tol) + 1) if bore.chamfer else np.zeros(1)
     sections = [_bore_polygon(bore, bore.radius + bore.chamfer - d, shares) for d in depths]
     lower = list(zip(sections, depths.tolist(), strict=True))
@@ -169,6 +170,5 @@ def _cone_levels(bore: Bore, tol: float) -> int:
 
 
 def _bore_polygon(bore: Bore, radius: float, shares: Reals) -> Points:
-    arc, *sides = (p.curve for p in bore.section(radius).pieces)
-    round_part = arc.point(shares)
-    return np.concatenate([round_part, [s.end for s in sides[:2]]]) if sides else round_part[:-1]
+    curves = [p.curve for p in bore.section(radius).pieces]
+    return np.concatenate([c.point(shares)[:-1] if isinstance(c, Arc) else [c.start] for c in curves])

@@ -1,9 +1,13 @@
-"""The shaft hole of a body: round, with an optional hub keyway and optional 45 degree chamfers at both mouths."""
+"""The round shaft hole of a body: up to two hub keyways, and 45 degree chamfers at both mouths."""
 
 from dataclasses import dataclass
 from functools import cached_property
-from math import asin, hypot, log, pi, sqrt
+from itertools import pairwise
+from math import asin, degrees, hypot, log, pi, radians, sqrt
 
+import numpy as np
+
+from gearsolid.curves.curve import Curve
 from gearsolid.curves.loops import hole
 from gearsolid.curves.outline import Outline, Piece
 from gearsolid.curves.primitives import Arc, Segment
@@ -14,7 +18,7 @@ from gearsolid.shop.keys import KeySeat, key_for_bore
 
 @dataclass(frozen=True)
 class Bore:
-    """Hole for the shaft, its keyway centred on the +x axis, where members have a tooth.
+    """Hole for the shaft, its first keyway centred on the +x axis, where members have a tooth.
 
     A keyway in line with a tooth leaves the root over it thick (common practice; state it on the drawing).
 
@@ -24,6 +28,7 @@ class Bore:
         key: key seat, or None for a plain hole.
         chamfer: [mm] along the axis and along the radius, at both mouths.
         fit: limits the made bore must keep, for drawing and report; or None.
+        second_key: angle from the first to a second key of the same size [deg], usually 90 or 180; or None.
 
     Raises:
         DesignError: a size out of range; the message gives the limit.
@@ -33,6 +38,7 @@ class Bore:
     key: KeySeat | None = None
     chamfer: float = 0.0
     fit: Limits | None = None
+    second_key: float | None = None
 
     def __post_init__(self) -> None:
         if not self.diameter > 0:
@@ -40,6 +46,8 @@ class Bore:
         if not self.chamfer >= 0:
             raise DesignError(f"the bore chamfer is {self.chamfer:g} mm; it must be 0 or more")
         if self.key is None:
+            if self.second_key is not None:
+                raise DesignError("a second key is asked for and no first one; give the key seat too")
             return
         if not self.key.width < self.diameter:
             raise DesignError(
@@ -50,6 +58,12 @@ class Bore:
             raise DesignError(
                 f"the bore chamfer is {self.chamfer:g} mm; it must be below the keyway depth of "
                 f"{self.key.hub_depth:g} mm, or it would eat the keyway floor"
+            )
+        least = degrees(2 * asin(self.key.width / self.diameter))
+        if self.second_key is not None and not least < self.second_key < 360 - least:
+            raise DesignError(
+                f"a second keyway {self.second_key:g} deg from the first runs into it; keyways {self.key.width:g} mm "
+                f"wide in a bore of {self.diameter:g} mm must be more than {least:.2f} deg apart: take 90 or 180 deg"
             )
 
     @classmethod
@@ -95,15 +109,20 @@ class Bore:
     def section(self, radius: float) -> Outline:
         """Boundary of the hole at a level where its round part has `radius` [mm], clockwise.
 
-        Plain: one full turn from the +x axis. Keyed: the arc, then the three sides of the keyway, floor second.
+        Plain: one full turn from the +x axis. Keyed: an arc up to each keyway and its three sides, floor second; the
+        keyway on the +x axis comes last.
         """
         if self.key is None:
             return hole(radius)
         side = self.key.width / 2
         half = asin(side / radius)
-        upper, lower = complex(self.floor, side), complex(self.floor, -side)
-        arc = Arc(0, radius, -half, half - 2 * pi)
-        curves = (arc, Segment(arc.end, upper), Segment(upper, lower), Segment(lower, arc.start))
+        second = () if self.second_key is None else (radians(self.second_key),)
+        curves: list[Curve] = []
+        for before, angle in pairwise((2 * pi, *second, 0.0)):
+            arc = Arc(0, radius, before - half, angle + half)
+            upper, lower = (complex(np.exp(1j * angle)) * complex(self.floor, y) for y in (side, -side))
+            end = radius * complex(np.exp(1j * (angle - half)))
+            curves += [arc, Segment(arc.end, upper), Segment(upper, lower), Segment(lower, end)]
         return Outline(tuple(Piece(c, "hole") for c in curves), 1)
 
     def volume(self, width: float) -> float:
@@ -129,8 +148,8 @@ class Bore:
         cone = pi * (edge**3 - r**3) / 3
         if self.key is None:
             return cone
-        side = self.key.width / 2
-        return cone + 2 * side * self.floor * self.chamfer - (_strip(edge, side) - _strip(r, side))
+        side, keys = self.key.width / 2, 1 if self.second_key is None else 2
+        return cone + keys * (2 * side * self.floor * self.chamfer - (_strip(edge, side) - _strip(r, side)))
 
 
 def _strip(radius: float, side: float) -> float:

@@ -1,10 +1,13 @@
 """Bodies of every kind of boundary the solids have to carry, shared by the CAD tests."""
 
+from dataclasses import replace
+
 from gearsolid.curves.loops import disc, holes, pins
 from gearsolid.curves.outline import Outline, Piece
 from gearsolid.curves.primitives import Segment
 from gearsolid.pairs.part import Body, Boss
 from gearsolid.shop.bore import Bore
+from gearsolid.shop.keys_inch import inch_key_for_bore
 from gearsolid.teeth.cycloidal import CycloidalGear
 from gearsolid.teeth.internal import InternalGear
 from gearsolid.teeth.involute import InvoluteGear
@@ -20,6 +23,10 @@ PLAIN = {
     "square with chamfered bore": Body(SQUARE, 5, bore=Bore(8, None, 0.5)),
     "square with keyed bore": Body(SQUARE, 5, bore=Bore.keyed(8)),
     "square with chamfered keyed bore": Body(SQUARE, 5, bore=Bore.keyed(10, 0.5), z=-2),
+    "square with two keyways": Body(SQUARE, 5, bore=replace(Bore.keyed(8), second_key=90)),
+    "disc with chamfered inch keyways": Body(
+        disc(22), 9, bore=Bore(25.4, inch_key_for_bore(25.4), 0.8, second_key=180), z=1
+    ),
     "plate with holes": Body(disc(30), 4, holes=(holes(5, 18, 4, 0.3),), bore=Bore(10)),
     "plate with one hole off the axis": Body(disc(30), 4, holes=(holes(1, 18, 4),)),
     "carrier with pins": Body(disc(30), 4, bore=Bore(12), bosses=(Boss(pins(3, 20, 4), 9),)),

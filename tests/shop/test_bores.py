@@ -1,3 +1,4 @@
+from dataclasses import replace
 from math import hypot, pi
 
 import numpy as np
@@ -5,6 +6,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 from scipy.integrate import quad
+from shapely.affinity import rotate
 from shapely.geometry import Point, box
 from shapely.ops import unary_union
 
@@ -18,10 +20,17 @@ def _region(bore: Bore, radius: float):
     round_part = Point(0, 0).buffer(radius, quad_segs=4096)
     if bore.key is None:
         return round_part
-    return unary_union([round_part, box(0, -bore.key.width / 2, bore.floor, bore.key.width / 2)])
+    keyway = box(0, -bore.key.width / 2, bore.floor, bore.key.width / 2)
+    second = [] if bore.second_key is None else [rotate(keyway, bore.second_key, origin=(0, 0))]
+    return unary_union([round_part, keyway, *second])
 
 
-@pytest.mark.parametrize("bore", [Bore(8), Bore.keyed(20), Bore.keyed(6), Bore.keyed(44, 1.5)], ids=str)
+TWO_KEYS = {angle: replace(Bore.keyed(20, 1.0), second_key=angle) for angle in (90, 120, 180, 270)}
+
+
+@pytest.mark.parametrize(
+    "bore", [Bore(8), Bore.keyed(20), Bore.keyed(6), Bore.keyed(44, 1.5), *TWO_KEYS.values()], ids=str
+)
 def test_outline_encloses_hole_and_keyway(bore):
     assert bore.outline.is_chain
     assert -bore.outline.area == pytest.approx(_region(bore, bore.radius).area, rel=1e-6)
@@ -51,8 +60,8 @@ def test_keyed_volume_is_the_sum_of_its_sections(diameter, share, width):
     assert bore.volume(width) == pytest.approx(summed, rel=1e-12)
 
 
-def test_keyed_volume_agrees_with_slices_of_shapely_regions():
-    bore = Bore.keyed(20, 1.0)
+@pytest.mark.parametrize("bore", [Bore.keyed(20, 1.0), *TWO_KEYS.values()], ids=["one key", *map(str, TWO_KEYS)])
+def test_keyed_volume_agrees_with_slices_of_shapely_regions(bore):
     depth, weight = np.polynomial.legendre.leggauss(6)
     mouth = sum(w / 2 * _region(bore, bore.radius + 1 - (d + 1) / 2).area for d, w in zip(depth, weight, strict=True))
     assert bore.volume(12) == pytest.approx(_region(bore, bore.radius).area * 10 + 2 * mouth, rel=1e-6)
@@ -77,6 +86,9 @@ def test_mouth_is_wider_than_the_bore_and_keeps_the_keyway_floor():
         (lambda: Bore(10, None, -0.1), "chamfer is -0.1 mm"),
         (lambda: Bore(10, KeySeat(10, 3, 1.8, 1.4)), "10 mm wide does not fit a bore of 10 mm"),
         (lambda: Bore.keyed(20, 2.8), "below the keyway depth of 2.8 mm"),
+        (lambda: Bore(10, second_key=90), "no first one"),
+        (lambda: Bore(20, KeySeat(10, 8, 5, 3.3), second_key=60), "more than 60.00 deg apart"),
+        (lambda: Bore(20, KeySeat(10, 8, 5, 3.3), second_key=301), "301 deg from the first runs into it"),
         (lambda: Bore.keyed(5), "6 to 500 mm"),
         (lambda: Bore(10, None, 2.0).volume(4), "below 2 mm"),
     ],
