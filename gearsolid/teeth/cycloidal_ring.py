@@ -15,8 +15,7 @@ class CycloidalRing(CycloidalGear):
     ring and pinion keep clear of each other while the two describing circles together are no larger than the centre
     distance.
 
-    Args:
-        teeth: number of teeth [-], positive.
+    Fields as in `CycloidalMember`; `teeth` is positive.
 
     Raises:
         DesignError: as for an external member; the message gives the limit.
