@@ -267,3 +267,39 @@ def test_keys_come_from_the_table_asked_for_and_may_be_two(tmp_path):
 def test_what_a_key_needs_is_refused_without_one(tmp_path, added):
     message = refused(tmp_path, STAGE.replace("bore = 12.0 ", f"{added}\nbore = 12.0 "))
     assert "planet: second_key or key_table is given without a key" in message
+
+
+@pytest.mark.parametrize(
+    ("keys", "callout"),
+    [
+        ('bore_form = "D"\nbore = 6.0', "⌀ 6, 5.5 across the flat"),
+        ('bore_form = "D"\nacross_flat = 4.8\nbore = 6.0', "⌀ 6, 4.8 across the flat"),
+        ('bore_form = "double D"\nacross_flat = 4.0\nbore = 6.0', "⌀ 6, 4 across flats"),
+        ('bore_form = "square"\nbore = 8.0', "□ 8"),
+        ('bore_form = "hexagon"\ncorner_relief = 0.4\nbore = 8.0', "hexagon 8, corners drilled R 0.4"),
+        ('bore_form = "round"\nbore = 8.0', "⌀ 8"),
+    ],
+)
+def test_a_shaft_hole_of_any_form(tmp_path, keys, callout):
+    path = tmp_path / "recipe.toml"
+    path.write_text(STAGE.replace("bore = 12.0 ", f"{keys} ").replace("chamfer = 0.4\n", ""), encoding="utf-8")
+    planet = next(p for p in read_recipe(path).machine.parts if p.name.startswith("planet"))
+    assert planet.body.bore.callout == callout
+
+
+@pytest.mark.parametrize(
+    ("keys", "words"),
+    [
+        ('bore_form = "D"', "given without a bore"),
+        ('bore_form = "D"\nbore = 6.0\nkey = true', "key, chamfer and fit are for a round bore"),
+        ('bore_form = "double D"\nbore = 6.0', "needs across_flat"),
+        ("across_flat = 5.0\nbore = 6.0", "across_flat is for"),
+        ('bore_form = "D"\ncorner_relief = 0.3\nbore = 6.0', "corner_relief is for"),
+        ('bore_form = "D"\nbore = 7.0', "no flat is usual on a shaft of 7 mm"),
+        ('bore_form = "hexagonal"\nbore = 7.0', 'did you mean "hexagon"?'),
+        ('bore_form = "square"\nbore = 18.0', "the root circle has a radius"),
+    ],
+)
+def test_what_a_form_cannot_have_is_refused(tmp_path, keys, words):
+    text = STAGE.replace("bore = 12.0 ", f"{keys} ").replace("chamfer = 0.4\n", "")
+    assert words in refused(tmp_path, text, (DesignError, RecipeError))

@@ -19,6 +19,7 @@ from gearsolid.curves.primitives import Arc
 from gearsolid.output.polygon import chord_parameters, polygons
 from gearsolid.pairs.part import Body
 from gearsolid.shop.bore import Bore
+from gearsolid.shop.shaft_hole import ShaftHole
 
 Corners = NDArray[np.int64]
 
@@ -148,10 +149,13 @@ def body_triangles(body: Body, tol: float = 0.01) -> Triangles:
     return surface.done()
 
 
-def _bore_levels(bore: Bore | None, length: float, tol: float) -> list[tuple[Points, float]]:
+def _bore_levels(bore: ShaftHole | None, length: float, tol: float) -> list[tuple[Points, float]]:
     """Polygons of a shaft hole and their heights above its lower end [mm], all of equally many points."""
     if bore is None:
         return []
+    if not isinstance(bore, Bore):
+        (flat,) = polygons(bore.outline, tol)
+        return [(flat, 0.0), (flat, length)]
     arcs = [p.curve for p in bore.mouth.pieces if isinstance(p.curve, Arc)]
     shares = np.linspace(0, 1, max(len(chord_parameters(arc, *arc.span, tol)) for arc in arcs))
     depths = np.linspace(0, bore.chamfer, _cone_levels(bore, tol) + 1) if bore.chamfer else np.zeros(1)

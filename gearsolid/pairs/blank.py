@@ -6,7 +6,7 @@ from gearsolid.curves.loops import disc
 from gearsolid.curves.outline import Outline
 from gearsolid.errors import DesignError
 from gearsolid.pairs.part import Body
-from gearsolid.shop.bore import Bore
+from gearsolid.shop.shaft_hole import ShaftHole
 
 
 @dataclass(frozen=True)
@@ -21,7 +21,7 @@ class Blank:
     """
 
     face_width: float
-    bore: Bore | None = None
+    bore: ShaftHole | None = None
     rim_diameter: float | None = None
     z: float = 0.0
 
@@ -47,8 +47,8 @@ def body_of(outline: Outline, blank: Blank) -> Body:
         )
     if blank.bore is not None and blank.bore.reach >= outline.r_min:
         raise DesignError(
-            f"the bore (with keyway and chamfer) reaches {blank.bore.reach:.4g} mm from the axis, but the root circle "
-            f"has a radius of {outline.r_min:.4g} mm: take a smaller bore, no key, or more teeth"
+            f"the bore (with keyways, corners, chamfer) reaches {blank.bore.reach:.4g} mm from the axis, but the root "
+            f"circle has a radius of {outline.r_min:.4g} mm: take a smaller bore, no key, or more teeth"
         )
     return Body(outline, blank.face_width, bore=blank.bore, z=blank.z)
 

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 from gearsolid.curves.outline import Outline
 from gearsolid.errors import DesignError
 from gearsolid.pairs.motion import Motion
-from gearsolid.shop.bore import Bore
+from gearsolid.shop.shaft_hole import ShaftHole
 
 
 @dataclass(frozen=True)
@@ -35,7 +35,7 @@ class Body:
         outer: outer boundary, material on its left.
         width: [mm] along the axis.
         holes: further boundaries inside (toothed hole of an annulus, roller holes), material on their left.
-        bore: shaft hole with optional keyway and chamfer, or None.
+        bore: shaft hole, or None.
         bosses: raised loops on the top face.
         z: height of the bottom face [mm].
     """
@@ -43,7 +43,7 @@ class Body:
     outer: Outline
     width: float
     holes: tuple[Outline, ...] = ()
-    bore: Bore | None = None
+    bore: ShaftHole | None = None
     bosses: tuple[Boss, ...] = ()
     z: float = 0.0
 
@@ -58,11 +58,11 @@ class Body:
             raise DesignError("a body with an opening round the axis (an annulus) has no place for a bore or a hub")
         solid = min(o.r_min for o in (self.outer, *(h.outline for h in hubs)))
         if self.bore:
-            edge = self.bore.radius + self.bore.chamfer
-            if not edge < solid:
+            if not self.bore.reach < solid:
                 raise DesignError(
-                    f"the bore of {self.bore.diameter:g} mm with its chamfer needs a radius of {edge:g} mm and the "
-                    f"body has {solid:.5g} mm; take a smaller bore or a larger body"
+                    f"the shaft hole ({self.bore.callout} mm) reaches {self.bore.reach:.5g} mm from the axis with its "
+                    f"keyways, corners and chamfers, and the body has {solid:.5g} mm; take a smaller hole or a larger "
+                    "body"
                 )
             # The bore itself knows whether its two chamfers find room in this length.
             self.bore.volume(self.bore_length)

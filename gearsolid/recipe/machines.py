@@ -12,7 +12,8 @@ from gearsolid.pairs.machine import Machine
 from gearsolid.pairs.planetary import PlanetaryStage
 from gearsolid.pairs.reducer import OutputRollers, PinWheelReducer, Stack
 from gearsolid.pairs.spur_pair import SpurPair
-from gearsolid.recipe.members import Bored, ClockTable, CycloidalTable, InvoluteTable, RingTable
+from gearsolid.recipe.members import ClockTable, CycloidalTable, InvoluteTable, RingTable
+from gearsolid.recipe.shaft_holes import Bored
 from gearsolid.recipe.table import Table, entry, of_table
 from gearsolid.shop.bore import Bore
 from gearsolid.teeth.clock import cycloidal_pair, ogival_pair

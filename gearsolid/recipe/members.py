@@ -1,64 +1,11 @@
 """The tables of toothed members."""
 
-from typing import Literal, Self
-
-from pydantic import model_validator
-
 from gearsolid.pairs.blank import Blank
+from gearsolid.recipe.shaft_holes import Profiled
 from gearsolid.recipe.table import Table, entry
-from gearsolid.shop.bore import Bore
-from gearsolid.shop.fits import hole_limits
-from gearsolid.shop.keys import KeySeat, key_for_bore
-from gearsolid.shop.keys_inch import KeySection, inch_key_for_bore
 from gearsolid.teeth.cycloidal import CycloidalGear
 from gearsolid.teeth.internal import InternalGear
 from gearsolid.teeth.involute import InvoluteGear
-
-_SECTIONS: dict[str, KeySection] = {"inch": "preferred", "inch square": "square", "inch rectangular": "rectangular"}
-
-
-class Bored(Table):
-    """A table of something on a shaft."""
-
-    bore: float | None = entry("diameter of the shaft hole; no hole when left out", "mm", None, gt=0)
-    key: bool = entry("whether the bore has the keyway its table gives it", default=False)
-    key_table: Literal["metric", "inch", "inch square", "inch rectangular"] = entry(
-        "table the key is taken from: ISO/R 773, or ANSI B17.1 with the section it prefers, square or rectangular",
-        default="metric",
-    )
-    second_key: float | None = entry(
-        "angle from the first key to a second one of the same size, usually 90 or 180", "deg", None, gt=0, lt=360
-    )
-    chamfer: float = entry("45 degree chamfer at both mouths of the bore", "mm", 0.0, ge=0)
-    fit: str | None = entry("tolerance class of the bore by ISO 286-2, as H7", default=None)
-    drawn: Literal["nominal", "middle"] = entry(
-        "size at which the solid's bore is drawn: the nominal one, or half way between the limits of its fit",
-        default="nominal",
-    )
-
-    @model_validator(mode="after")
-    def _needs_bore(self) -> Self:
-        if self.bore is None and (self.key or self.chamfer or self.fit):
-            raise ValueError("a key, chamfer or fit is given without a bore; add the key bore, the diameter in mm")
-        if not self.key and (self.second_key or self.key_table != "metric"):
-            raise ValueError("second_key or key_table is given without a key; add key = true")
-        if self.drawn == "middle" and not self.fit:
-            raise ValueError('drawn = "middle" needs the limits of a fit; add the key fit, as in fit = "H7"')
-        return self
-
-    def shaft_hole(self) -> Bore | None:
-        """The bore the keys describe."""
-        if self.bore is None:
-            return None
-        fit = hole_limits(self.bore, self.fit) if self.fit else None
-        diameter = fit.middle if fit and self.drawn == "middle" else self.bore
-        return Bore(diameter, self._key_seat(self.bore), self.chamfer, fit, self.second_key)
-
-    def _key_seat(self, bore: float) -> KeySeat | None:
-        """The seat the tables give to a nominal bore [mm]."""
-        if not self.key:
-            return None
-        return key_for_bore(bore) if self.key_table == "metric" else inch_key_for_bore(bore, _SECTIONS[self.key_table])
 
 
 class _Size(Table):
@@ -66,7 +13,7 @@ class _Size(Table):
     face_width: float = entry("width of the teeth along the axis", "mm", gt=0)
 
 
-class InvoluteTable(Bored, _Size):
+class InvoluteTable(Profiled, _Size):
     """An external involute member."""
 
     profile_shift: float = entry("profile shift coefficient; positive makes the tooth thicker", default=0.0)
@@ -88,7 +35,7 @@ class InvoluteTable(Bored, _Size):
 
     def blank(self) -> Blank:
         """The body before teeth."""
-        return Blank(self.face_width, self.shaft_hole())
+        return Blank(self.face_width, self.hole())
 
 
 class RingTable(_Size):
@@ -119,17 +66,17 @@ class RingTable(_Size):
         return Blank(self.face_width, rim_diameter=self.rim_diameter)
 
 
-class ClockTable(Bored, _Size):
+class ClockTable(Profiled, _Size):
     """A wheel or pinion of a clock, whose teeth follow from the counts."""
 
     teeth: int = entry("number of teeth or leaves", ge=6)
 
     def blank(self) -> Blank:
         """The body before teeth."""
-        return Blank(self.face_width, self.shaft_hole())
+        return Blank(self.face_width, self.hole())
 
 
-class CycloidalTable(Bored, _Size):
+class CycloidalTable(Profiled, _Size):
     """A cycloidal member of a clock or instrument."""
 
     teeth: int = entry("number of teeth or leaves", ge=5)
@@ -164,4 +111,4 @@ class CycloidalTable(Bored, _Size):
 
     def blank(self) -> Blank:
         """The body before teeth."""
-        return Blank(self.face_width, self.shaft_hole())
+        return Blank(self.face_width, self.hole())

@@ -21,7 +21,7 @@ from OCP.TopoDS import TopoDS, TopoDS_Face, TopoDS_Iterator, TopoDS_Shape, TopoD
 
 from gearsolid.curves.loops import disc
 from gearsolid.curves.outline import Outline
-from gearsolid.shop.bore import Bore
+from gearsolid.shop.shaft_hole import ShaftHole
 from gearsolid.solids.wires import outline_wires
 
 # Largest distance the kernel takes for none [mm].
@@ -95,7 +95,7 @@ def _edges(face: TopoDS_Face) -> Iterator[TopoDS_Shape]:
         explorer.Next()
 
 
-def bore_wall(bore: Bore, z: float, height: float) -> Wall:
+def bore_wall(bore: ShaftHole, z: float, height: float) -> Wall:
     """Wall of a shaft hole with its keyway and mouth chamfers.
 
     Args:
@@ -118,7 +118,7 @@ def bore_wall(bore: Bore, z: float, height: float) -> Wall:
     return Wall(inside, _inner_wire(lower).Reversed(), _inner_wire(upper))
 
 
-def _mouth_cones(bore: Bore, z: float, height: float) -> tuple[cq.Solid, cq.Solid]:
+def _mouth_cones(bore: ShaftHole, z: float, height: float) -> tuple[cq.Solid, cq.Solid]:
     """Cones that chamfer both mouths; they run on past the ends of the chamfer, so that no edges coincide."""
     over = bore.radius / 2
     wide, narrow, deep = bore.radius + bore.chamfer + over, bore.radius - over, bore.chamfer + 2 * over

@@ -8,6 +8,7 @@ from gearsolid.curves.primitives import Segment
 from gearsolid.pairs.part import Body, Boss
 from gearsolid.shop.bore import Bore
 from gearsolid.shop.keys_inch import inch_key_for_bore
+from gearsolid.shop.profile_hole import d_hole, double_d_hole, hexagon_hole, square_hole
 from gearsolid.teeth.cycloidal import CycloidalGear
 from gearsolid.teeth.internal import InternalGear
 from gearsolid.teeth.involute import InvoluteGear
@@ -27,6 +28,11 @@ PLAIN = {
     "disc with chamfered inch keyways": Body(
         disc(22), 9, bore=Bore(25.4, inch_key_for_bore(25.4), 0.8, second_key=180), z=1
     ),
+    "disc with D hole": Body(disc(8), 5, bore=d_hole(6)),
+    "hub with double-D hole": Body(disc(12), 3, bore=double_d_hole(6, 4), bosses=(Boss(disc(5), 4),), z=2),
+    "disc with square hole": Body(disc(8), 5, bore=square_hole(6)),
+    "hub with drilled square hole": Body(disc(12), 3, bore=square_hole(6, 0.8), bosses=(Boss(disc(6), 4),)),
+    "disc with drilled hexagon hole": Body(disc(10), 5, bore=hexagon_hole(10, 0.5)),
     "plate with holes": Body(disc(30), 4, holes=(holes(5, 18, 4, 0.3),), bore=Bore(10)),
     "plate with one hole off the axis": Body(disc(30), 4, holes=(holes(1, 18, 4),)),
     "carrier with pins": Body(disc(30), 4, bore=Bore(12), bosses=(Boss(pins(3, 20, 4), 9),)),
