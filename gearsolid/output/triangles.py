@@ -1,10 +1,10 @@
 """A body as triangles: its end faces cut into triangles, its walls into strips between the same corners.
 
-No point is added inside a face, so the triangles are as few as the chord tolerance allows, and every corner lies on the
-exact boundary.
+No point is added inside a face but the levels that twisted teeth need, so the triangles are as few as the chord
+tolerance allows, and every corner lies on the exact boundary.
 """
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import pairwise
@@ -15,9 +15,10 @@ from ezdxf.math.triangulation import mapbox_earcut_2d
 from numpy.typing import NDArray
 
 from gearsolid.curves.curve import Points, Reals
+from gearsolid.curves.outline import Outline
 from gearsolid.curves.primitives import Arc
 from gearsolid.output.polygon import chord_parameters, polygons
-from gearsolid.pairs.part import Body
+from gearsolid.pairs.part import Body, is_toothed
 from gearsolid.shop.bore import Bore
 from gearsolid.shop.shaft_hole import ShaftHole
 
@@ -129,9 +130,9 @@ def body_triangles(body: Body, tol: float = 0.01) -> Triangles:
     surface = _Surface()
     low, top = body.z, body.z + body.width
     sides = [
-        (surface.ring(flat, low), surface.ring(flat, top))
+        [surface.ring(flat * np.exp(1j * turn), low + height) for height, turn in levels]
         for outline in (body.outer, *body.holes)
-        for flat in polygons(outline, tol)
+        for flat, levels in _sides(body, outline, tol)
     ]
     raised = [
         (boss, surface.ring(flat, top), surface.ring(flat, top + boss.height))
@@ -139,14 +140,40 @@ def body_triangles(body: Body, tol: float = 0.01) -> Triangles:
         for flat in polygons(boss.outline, tol)
     ]
     bore = [surface.ring(flat, body.z + z) for flat, z in _bore_levels(body.bore, body.bore_length, tol)]
-    for lower, upper in (*sides, *(r[1:] for r in raised), *pairwise(bore)):
+    for lower, upper in (*(p for s in sides for p in pairwise(s)), *(r[1:] for r in raised), *pairwise(bore)):
         surface.wall(lower, upper)
     outer, *holes = sides
     surface.face(outer[0], [*(h[0] for h in holes), *bore[:1]], up=False)
-    surface.face(outer[1], [*(h[1] for h in holes), *(r[1] for r in raised), *([] if body.hub else bore[-1:])])
+    surface.face(outer[-1], [*(h[-1] for h in holes), *(r[1] for r in raised), *([] if body.hub else bore[-1:])])
     for boss, _, upper in raised:
         surface.face(upper, bore[-1:] if boss is body.hub else [])
     return surface.done()
+
+
+def _sides(body: Body, outline: Outline, tol: float) -> list[tuple[Points, list[tuple[float, float]]]]:
+    """Polygons of a side's section, and the heights [mm] and turns [rad] at which their corners stand."""
+    if not (body.twists and is_toothed(outline)):
+        return [(flat, [(0.0, 0.0), (body.width, 0.0)]) for flat in polygons(outline, tol)]
+    # Half the tolerance goes to the chords of the section, half to the turn between two levels.
+    (flat,) = polygons(outline, tol / 2)
+    step = _turn_step(float(np.max(np.abs(np.roll(flat, -1) - flat))), outline.r_max, tol / 2)
+    return [(flat, list(_stepped(body.levels, step)))]
+
+
+def _turn_step(chord: float, radius: float, tol: float) -> float:
+    """Turn between levels [rad] that keeps a strip's sides and diagonals within `tol` of the twisted wall [mm].
+
+    With a turn d a helix stands off its chord by r d^2 / 8, and a diagonal by l d / 4 more over a section's chord l.
+    """
+    return (float(np.sqrt(chord**2 + 8 * radius * tol)) - chord) / radius
+
+
+def _stepped(levels: Sequence[tuple[float, float]], step: float) -> Iterator[tuple[float, float]]:
+    """The levels, with more put in so that the section turns at most a step between two."""
+    yield levels[0]
+    for (h0, t0), (h1, t1) in pairwise(levels):
+        shares = np.linspace(0, 1, int(np.ceil(abs(t1 - t0) / step)) + 1 if t1 != t0 else 2)[1:]
+        yield from zip((h0 + (h1 - h0) * shares).tolist(), (t0 + (t1 - t0) * shares).tolist(), strict=True)
 
 
 def _bore_levels(bore: ShaftHole | None, length: float, tol: float) -> list[tuple[Points, float]]:

@@ -8,6 +8,10 @@ from gearsolid.errors import DesignError
 from gearsolid.pairs.part import Body
 from gearsolid.shop.shaft_hole import ShaftHole
 
+# How the teeth of a helical body run up the face width: signs of the helix over equally long stretches.
+HELICAL: tuple[int, ...] = (1,)
+DOUBLE_HELICAL: tuple[int, ...] = (1, -1)
+
 
 @dataclass(frozen=True)
 class Blank:
@@ -18,12 +22,20 @@ class Blank:
         bore: shaft hole, or None.
         rim_diameter: outside diameter of an annulus [mm]; None takes two tooth depths beyond the root circle.
         z: height of the bottom face [mm].
+        course: of helical teeth up the face width: `HELICAL` or `DOUBLE_HELICAL`, whose lower half has the member's
+            own hand; straight teeth have none.
     """
 
     face_width: float
     bore: ShaftHole | None = None
     rim_diameter: float | None = None
     z: float = 0.0
+    course: tuple[int, ...] = HELICAL
+
+    def twists(self, rate: float) -> tuple[float, ...]:
+        """Turns of the stretches [rad], given the turn per height [rad/mm]; none for straight teeth."""
+        stretch = self.face_width / len(self.course)
+        return tuple(sign * rate * stretch for sign in self.course) if rate else ()
 
 
 def is_ring(outline: Outline) -> bool:
@@ -31,15 +43,20 @@ def is_ring(outline: Outline) -> bool:
     return outline.area < 0
 
 
-def body_of(outline: Outline, blank: Blank) -> Body:
+def body_of(outline: Outline, blank: Blank, rate: float = 0.0) -> Body:
     """The body of a toothed member.
+
+    Args:
+        outline: the member's transverse section.
+        blank: the body before teeth.
+        rate: turn of the section per height [rad/mm], positive right-hand; 0 for straight teeth.
 
     Raises:
         DesignError: the bore or keyway reaches the root circle, a ring is given a bore or a wheel a rim, or the rim
             leaves no material behind the teeth.
     """
     if is_ring(outline):
-        return _ring_body(outline, blank)
+        return _ring_body(outline, blank, rate)
     if blank.rim_diameter is not None:
         raise DesignError(
             f"a rim diameter of {blank.rim_diameter:g} mm was given to a member with outside teeth; only an annulus "
@@ -50,10 +67,10 @@ def body_of(outline: Outline, blank: Blank) -> Body:
             f"the bore (with keyways, corners, chamfer) reaches {blank.bore.reach:.4g} mm from the axis, but the root "
             f"circle has a radius of {outline.r_min:.4g} mm: take a smaller bore, no key, or more teeth"
         )
-    return Body(outline, blank.face_width, bore=blank.bore, z=blank.z)
+    return Body(outline, blank.face_width, bore=blank.bore, z=blank.z, twists=blank.twists(rate))
 
 
-def _ring_body(outline: Outline, blank: Blank) -> Body:
+def _ring_body(outline: Outline, blank: Blank, rate: float) -> Body:
     if blank.bore is not None:
         raise DesignError("a bore was given to an annulus, whose hole is toothed: leave the bore out")
     least = 2 * outline.r_max
@@ -62,4 +79,4 @@ def _ring_body(outline: Outline, blank: Blank) -> Body:
         raise DesignError(
             f"the rim diameter is {rim:g} mm, but the root circle of the annulus has {least:.4f} mm: take a larger rim"
         )
-    return Body(disc(rim / 2), blank.face_width, holes=(outline,), z=blank.z)
+    return Body(disc(rim / 2), blank.face_width, holes=(outline,), z=blank.z, twists=blank.twists(rate))

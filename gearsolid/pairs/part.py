@@ -1,7 +1,12 @@
 """A part of a machine: the flat section it is made of, its width, and how it moves."""
 
 from dataclasses import dataclass
+from itertools import accumulate
+from math import isfinite
 
+import numpy as np
+
+from gearsolid.curves.curve import Reals
 from gearsolid.curves.outline import Outline
 from gearsolid.errors import DesignError
 from gearsolid.pairs.motion import Motion
@@ -27,9 +32,16 @@ class Boss:
             raise DesignError(f"a boss is {self.height:g} mm high; it must be above 0")
 
 
+def is_toothed(outline: Outline) -> bool:
+    """Whether an outline is a rim with flanks: what turns in a body that is twisted."""
+    return outline.is_chain and any(p.role == "flank" for p in outline.pieces)
+
+
 @dataclass(frozen=True)
 class Body:
     """A solid of constant section: outer boundary, holes, an optional bore, optional bosses on its top face.
+
+    Toothed rims may turn on their way up, which makes the teeth helical; everything else goes straight through.
 
     Args:
         outer: outer boundary, material on its left.
@@ -38,6 +50,9 @@ class Body:
         bore: shaft hole, or None.
         bosses: raised loops on the top face.
         z: height of the bottom face [mm].
+        twists: turn of the toothed rims [rad] over each of equally long stretches of the width, from the bottom up,
+            positive right-hand: one for helical teeth, two opposite ones for double helical; none for straight teeth.
+            The outlines are the section at the bottom face.
     """
 
     outer: Outline
@@ -46,10 +61,12 @@ class Body:
     bore: ShaftHole | None = None
     bosses: tuple[Boss, ...] = ()
     z: float = 0.0
+    twists: tuple[float, ...] = ()
 
     def __post_init__(self) -> None:
         if not self.width > 0:
             raise DesignError(f"the face width is {self.width:g} mm; it must be above 0")
+        self._check_twists()
         hubs = [b for b in self.bosses if b.outline.is_chain]
         if len(hubs) > 1:
             raise DesignError(f"a body has {len(hubs)} hubs on its top face; it can have one")
@@ -66,6 +83,43 @@ class Body:
                 )
             # The bore itself knows whether its two chamfers find room in this length.
             self.bore.volume(self.bore_length)
+
+    def _check_twists(self) -> None:
+        if not self.twists:
+            return
+        if not all(isfinite(t) for t in self.twists):
+            raise DesignError(f"the twists of the body are {self.twists} rad; they must be numbers")
+        rims = (self.outer, *self.holes)
+        toothed = [o for o in rims if is_toothed(o)]
+        if not toothed:
+            raise DesignError(
+                "a body without a toothed rim is twisted; only flanks make a rim that turns: leave it out"
+            )
+        for rim in toothed:
+            for other in rims:
+                if not is_toothed(other) and other.r_min < rim.r_max and other.r_max > rim.r_min:
+                    raise DesignError(
+                        f"a straight boundary between radii {other.r_min:.5g} and {other.r_max:.5g} mm lies beside "
+                        f"helical teeth between {rim.r_min:.5g} and {rim.r_max:.5g} mm; keep it inside or outside them"
+                    )
+
+    @property
+    def levels(self) -> tuple[tuple[float, float], ...]:
+        """Heights above the bottom face [mm] between which toothed rims turn steadily, and their turns there [rad]."""
+        stretches = len(self.twists) or 1
+        turns = accumulate(self.twists or (0.0,), initial=0.0)
+        return tuple((self.width * k / stretches, turn) for k, turn in enumerate(turns))
+
+    def turn_at(self, height: Reals) -> Reals:
+        """Turn of toothed rims [rad] at heights above the bottom face [mm], any shape."""
+        heights, turns = zip(*self.levels, strict=True)
+        return np.interp(height, heights, turns)
+
+    @property
+    def twist_rate(self) -> float:
+        """Turn of toothed rims per height at the bottom face [rad/mm]; 0 for straight teeth."""
+        (_, _), (height, turn), *_ = self.levels
+        return turn / height
 
     @property
     def hub(self) -> Boss | None:

@@ -6,9 +6,10 @@ from math import gcd, pi, sin
 from typing import Literal
 
 from gearsolid.errors import DesignError
-from gearsolid.pairs.blank import Blank, body_of, is_ring
+from gearsolid.pairs.blank import Blank, is_ring
 from gearsolid.pairs.colours import BRASS, SLATE, STEEL
 from gearsolid.pairs.engagement import Engagement, engage
+from gearsolid.pairs.helix import check_helices, member_body
 from gearsolid.pairs.motion import Motion
 from gearsolid.pairs.part import Part
 from gearsolid.pairs.phasing import mate_angle, tooth_offset
@@ -84,6 +85,13 @@ class PlanetaryStage:
         if self.planet_turns_deg and len(self.planet_turns_deg) != self.planets:
             raise DesignError(f"{len(self.planet_turns_deg)} planet turns are given for {self.planets} planets")
         speeds(self.sun.teeth, self.ring.teeth, self.fixed, self.driver)
+        check_helices(
+            {
+                "sun": (self.sun, self.sun_blank),
+                "planet": (self.planet, self.planet_blank),
+                "ring": (self.ring, self.ring_blank),
+            }
+        )
         self._check_assembly()
         self._check_neighbours()
         self._check_coaxial()
@@ -179,14 +187,14 @@ class PlanetaryStage:
 
     @cached_property
     def parts(self) -> tuple[Part, ...]:
-        planet = body_of(self.planet.outline, self.planet_blank)
+        planet = member_body(self.planet, self.planet_blank)
         return (
-            Part("sun", body_of(self.sun.outline, self.sun_blank), self._sun_motion, BRASS),
+            Part("sun", member_body(self.sun, self.sun_blank), self._sun_motion, BRASS),
             *(
                 Part(name, planet, motion, STEEL)
                 for name, motion in zip(self.planet_names, self._planet_motions, strict=True)
             ),
-            Part("ring", body_of(self.ring.outline, self.ring_blank), self._ring_motion, SLATE),
+            Part("ring", member_body(self.ring, self.ring_blank), self._ring_motion, SLATE),
         )
 
     @cached_property

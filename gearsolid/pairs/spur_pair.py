@@ -1,13 +1,14 @@
-"""Two toothed members on fixed axes."""
+"""Two toothed members on parallel fixed axes."""
 
 from dataclasses import dataclass
 from functools import cached_property
 from math import pi
 
 from gearsolid.errors import DesignError
-from gearsolid.pairs.blank import Blank, body_of, is_ring
+from gearsolid.pairs.blank import Blank, is_ring
 from gearsolid.pairs.colours import BRASS, STEEL
 from gearsolid.pairs.engagement import Engagement, engage
+from gearsolid.pairs.helix import check_helices, member_body
 from gearsolid.pairs.motion import Motion
 from gearsolid.pairs.part import Part
 from gearsolid.pairs.phasing import mate_angle, tooth_offset
@@ -28,7 +29,7 @@ class SpurPair:
         driven_name: name of the driven part.
 
     Raises:
-        DesignError: both members are rings, or the centre distance is not above 0.
+        DesignError: both members are rings, their helices do not match, or the centre distance is not above 0.
     """
 
     driver: Member
@@ -44,6 +45,12 @@ class SpurPair:
             raise DesignError(f"the centre distance is {self.centre_distance:g} mm; it must be above 0")
         if is_ring(self.driver.outline) and is_ring(self.driven.outline):
             raise DesignError("both members are rings; a ring works with an external pinion inside it")
+        check_helices(
+            {
+                self.driver_name: (self.driver, self.driver_blank),
+                self.driven_name: (self.driven, self.driven_blank),
+            }
+        )
 
     @property
     def _sense(self) -> int:
@@ -72,8 +79,8 @@ class SpurPair:
     def parts(self) -> tuple[Part, ...]:
         driver, driven = self._motions
         return (
-            Part(self.driver_name, body_of(self.driver.outline, self.driver_blank), driver, BRASS),
-            Part(self.driven_name, body_of(self.driven.outline, self.driven_blank), driven, STEEL),
+            Part(self.driver_name, member_body(self.driver, self.driver_blank), driver, BRASS),
+            Part(self.driven_name, member_body(self.driven, self.driven_blank), driven, STEEL),
         )
 
     @cached_property

@@ -1,12 +1,13 @@
 """The machines a recipe can ask for, one schema each."""
 
 from abc import abstractmethod
+from dataclasses import replace
 from math import radians
 from typing import Literal, Protocol, Self
 
 from pydantic import model_validator
 
-from gearsolid.pairs.blank import Blank, body_of
+from gearsolid.pairs.blank import DOUBLE_HELICAL, HELICAL, Blank, body_of
 from gearsolid.pairs.eccentric_shaft import EccentricShaft
 from gearsolid.pairs.machine import Machine
 from gearsolid.pairs.planetary import PlanetaryStage
@@ -41,8 +42,8 @@ class MachineTable(Table):
 
 
 class _InvoluteStage(MachineTable):
-    module: float = entry("module of all members", "mm", gt=0)
-    pressure_angle: float = entry("pressure angle of all members", "deg", 20.0, ge=5, le=40)
+    module: float = entry("module of all members, normal to the teeth", "mm", gt=0)
+    pressure_angle: float = entry("pressure angle of all members, normal to the teeth", "deg", 20.0, ge=5, le=40)
     centre_distance: float | None = entry(
         "distance of the working axes; when left out, the one at which teeth that are not thinned have no play",
         "mm",
@@ -50,10 +51,11 @@ class _InvoluteStage(MachineTable):
         gt=0,
     )
 
-    def _distance(self, z1: int, z2: int, shift_sum: float) -> float:
+    def _distance(self, z1: int, z2: int, shift_sum: float, helix_angle: float) -> float:
         if self.centre_distance is not None:
             return self.centre_distance
-        return abs(centre_distance(z1, z2, shift_sum, radians(self.pressure_angle), module=self.module))
+        angles = radians(self.pressure_angle), radians(helix_angle)
+        return abs(centre_distance(z1, z2, shift_sum, *angles, module=self.module))
 
 
 class _Named(Table):
@@ -66,6 +68,24 @@ class _Named(Table):
 
 class InvoluteMemberTable(_Named, InvoluteTable):
     """An external involute member with a name of its own."""
+
+    double_helical: bool = entry(
+        "whether the teeth turn back at the middle of the face width, where both members need it; the helix angle is "
+        "that of the lower half",
+        default=False,
+    )
+
+    @model_validator(mode="after")
+    def _needs_helix(self) -> Self:
+        if self.double_helical and not self.helix_angle:
+            raise ValueError(
+                "double_helical needs a helix_angle that is not 0; 20 to 30 deg are usual, common practice"
+            )
+        return self
+
+    def blank(self) -> Blank:
+        """The body before teeth."""
+        return replace(super().blank(), course=DOUBLE_HELICAL if self.double_helical else HELICAL)
 
 
 class CycloidalMemberTable(_Named, CycloidalTable):
@@ -88,7 +108,7 @@ class InvolutePair(_InvoluteStage):
         driver, driver_blank = _made("driver", self.driver, self.module, self.pressure_angle)
         driven, driven_blank = _made("driven", self.driven, self.module, self.pressure_angle)
         shifts = self.driver.profile_shift + self.driven.profile_shift
-        distance = self._distance(driver.teeth, driven.teeth, shifts)
+        distance = self._distance(driver.teeth, driven.teeth, shifts, self.driver.helix_angle)
         names = self.driver.name or "driver", self.driven.name or "driven"
         return SpurPair(driver, driven, distance, driver_blank, driven_blank, *names)
 
@@ -104,7 +124,7 @@ class RingPair(_InvoluteStage):
         pinion, pinion_blank = _made("pinion", self.pinion, self.module, self.pressure_angle)
         ring, ring_blank = _made("ring", self.ring, self.module, self.pressure_angle)
         shifts = self.pinion.profile_shift + self.ring.profile_shift
-        distance = self._distance(pinion.teeth, -ring.teeth, shifts)
+        distance = self._distance(pinion.teeth, -ring.teeth, shifts, self.pinion.helix_angle)
         return SpurPair(pinion, ring, distance, pinion_blank, ring_blank, "pinion", "ring")
 
 
@@ -210,7 +230,7 @@ class Planetary(_InvoluteStage):
             planet,
             ring,
             self.planets,
-            self._distance(sun.teeth, planet.teeth, shifts),
+            self._distance(sun.teeth, planet.teeth, shifts, self.sun.helix_angle),
             sun_blank,
             planet_blank,
             ring_blank,

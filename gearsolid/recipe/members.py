@@ -13,7 +13,18 @@ class _Size(Table):
     face_width: float = entry("width of the teeth along the axis", "mm", gt=0)
 
 
-class InvoluteTable(Profiled, _Size):
+class _Involute(_Size):
+    helix_angle: float = entry(
+        "helix angle at the reference circle, positive right-hand, negative left-hand; members that work together have "
+        "equal angles: of opposite hand on two external members, of the same hand on a ring and what runs in it",
+        "deg",
+        0.0,
+        ge=-60,
+        le=60,
+    )
+
+
+class InvoluteTable(Profiled, _Involute):
     """An external involute member."""
 
     profile_shift: float = entry("profile shift coefficient; positive makes the tooth thicker", default=0.0)
@@ -29,6 +40,7 @@ class InvoluteTable(Profiled, _Size):
             module,
             pressure_angle,
             self.profile_shift,
+            self.helix_angle,
             tooth_thinning=self.tooth_thinning,
             tip_shortening=self.tip_shortening,
         )
@@ -38,7 +50,7 @@ class InvoluteTable(Profiled, _Size):
         return Blank(self.face_width, self.hole())
 
 
-class RingTable(_Size):
+class RingTable(_Involute):
     """An involute annulus."""
 
     rim_diameter: float | None = entry(
@@ -57,6 +69,7 @@ class RingTable(_Size):
             module,
             pressure_angle,
             self.profile_shift,
+            self.helix_angle,
             tooth_thinning=self.tooth_thinning,
             tip_shortening=self.tip_shortening,
         )

@@ -38,4 +38,6 @@ def location(part: Part, psi: float = 0.0) -> cq.Location:
     """Where a part's body, made at height 0, stands at input angle psi [rad]."""
     centre = part.motion.centre(psi)
     place = cq.Vector(centre.real, centre.imag, part.body.z)
-    return cq.Location(place, cq.Vector(0, 0, 1), degrees(part.motion.turn(psi)))
+    # Motions say how the section at height 0 stands; helical teeth have turned on by the time they reach the body.
+    turn = part.motion.turn(psi) + part.body.twist_rate * part.body.z
+    return cq.Location(place, cq.Vector(0, 0, 1), degrees(turn))

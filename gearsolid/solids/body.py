@@ -5,8 +5,9 @@ from OCP.TopoDS import TopoDS_Solid
 
 from gearsolid.curves.fitted import fitted
 from gearsolid.curves.outline import Outline
-from gearsolid.pairs.part import Body
+from gearsolid.pairs.part import Body, is_toothed
 from gearsolid.solids.check import VOLUME_TOL, check_solid
+from gearsolid.solids.twisted import twisted_wall
 from gearsolid.solids.walls import Wall, bore_wall, join_faces, plane_face, prism_walls
 
 # Share of the volume's tolerance that the fit of the flanks may use up.
@@ -39,9 +40,13 @@ def build_solid(body: Body, tol: float = 1e-4) -> TopoDS_Solid:
     def walls(outline: Outline, z: float, height: float) -> list[Wall]:
         return prism_walls(fitted(outline, tol, area_tol), z, height)
 
+    def rims(outline: Outline) -> list[Wall]:
+        if body.twists and is_toothed(outline):
+            return [twisted_wall(fitted(outline, tol, area_tol), body.z, body.levels)]
+        return walls(outline, body.z, body.width)
+
     top = body.z + body.width
-    sides = walls(body.outer, body.z, body.width)
-    sides += [w for h in body.holes for w in walls(h, body.z, body.width)]
+    sides = [w for o in (body.outer, *body.holes) for w in rims(o)]
     raised = [(b, w) for b in body.bosses for w in walls(b.outline, top, b.height)]
     bore = [bore_wall(body.bore, body.z, body.bore_length)] if body.bore else []
     below_hub = [] if body.hub else bore

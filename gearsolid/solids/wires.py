@@ -118,9 +118,14 @@ def _spline(spline: Spline, z: float) -> Geom_BSplineCurve:
     poles = TColgp_Array1OfPnt(1, len(spline.poles))
     for k, p in enumerate(spline.poles, 1):
         poles.SetValue(k, gp_Pnt(p.real, p.imag, z))
+    return Geom_BSplineCurve(poles, *knot_arrays(spline), spline.degree)
+
+
+def knot_arrays(spline: Spline) -> tuple[TColStd_Array1OfReal, TColStd_Array1OfInteger]:
+    """Distinct knots of a spline, and how often each stands in its knot vector."""
     steps = sorted(set(spline.knots))
     knots, counts = TColStd_Array1OfReal(1, len(steps)), TColStd_Array1OfInteger(1, len(steps))
     for k, knot in enumerate(steps, 1):
         knots.SetValue(k, knot)
         counts.SetValue(k, spline.knots.count(knot))
-    return Geom_BSplineCurve(poles, knots, counts, spline.degree)
+    return knots, counts
