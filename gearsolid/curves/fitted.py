@@ -49,7 +49,7 @@ def _plain(curve: Curve, tol: float, fits: dict[int, tuple[Curve, ...]]) -> tupl
         case Mirrored(base):
             return tuple(_mirrored(c) for c in reversed(_plain(base, tol, fits)))
         case Turned(base, factor, shift) if shift == 0:
-            return tuple(_turned(c, factor) for c in _plain(base, tol / abs(factor), fits))
+            return tuple(turned(c, factor) for c in _plain(base, tol / abs(factor), fits))
         case Section(Arc() as base, first, last):
             start, sweep = base.angle_from, base.sweep
             return (Arc(base.centre, base.radius, start + first * sweep, start + last * sweep),)
@@ -69,7 +69,8 @@ def _mirrored(curve: Curve) -> Curve:
     raise AssertionError(f"{type(curve).__name__} is no plain curve")
 
 
-def _turned(curve: Curve, factor: complex) -> Curve:
+def turned(curve: Curve, factor: complex) -> Curve:
+    """An arc, segment or spline multiplied by a complex factor (turn and scale), as one of the same kind."""
     match curve:
         case Arc(centre, radius, angle_from, angle_to):
             turn = cmath.phase(factor)
