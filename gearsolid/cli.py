@@ -65,7 +65,7 @@ def _parser() -> argparse.ArgumentParser:
     parser.add_argument("--version", action="version", version=f"gearsolid {__version__}")
     commands = parser.add_subparsers(required=True, metavar="COMMAND")
 
-    make = commands.add_parser("make", help="write STEP, STL and the report of a machine into a folder")
+    make = commands.add_parser("make", help="write the files of a machine and its report into a folder")
     make.add_argument("recipe", type=Path, metavar="RECIPE.toml")
     make.add_argument("--out", type=Path, required=True, metavar="FOLDER", help="folder to write; made if missing")
     make.set_defaults(run=_make)

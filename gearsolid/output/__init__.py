@@ -1,1 +1,1 @@
-"""Files: STEP, STL and the report, each read back before it is trusted."""
+"""Files: solids, facets and flat sections, each read back before it is trusted, and the report."""

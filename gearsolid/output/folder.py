@@ -1,4 +1,4 @@
-"""The folder of a machine: STEP and STL of each distinct part, STEP of the whole, and the report in two forms."""
+"""The folder of a machine: each distinct part as solid, facets and flat section, the whole placed, and the report."""
 
 from collections.abc import Mapping, Sequence
 from pathlib import Path
@@ -10,23 +10,40 @@ from gearsolid.contact.result import RollResult
 from gearsolid.contact.roll import roll_test
 from gearsolid.errors import DesignError
 from gearsolid.output.deviation import flank_deviation
-from gearsolid.output.made import Made, distinct
+from gearsolid.output.dxf import write_arc_dxf, write_dxf
+from gearsolid.output.flat import flat
+from gearsolid.output.made import Made, distinct, pitch_radii
 from gearsolid.output.page import page
 from gearsolid.output.progress import Tell
 from gearsolid.output.report import FileRecord, PartRecord, make_report
 from gearsolid.output.step import write_step
 from gearsolid.output.stl import write_stl
+from gearsolid.output.svg import write_svg
 from gearsolid.output.swap import REPORT, fingerprint, swapped_in
+from gearsolid.output.threemf import write_machine_threemf, write_part_threemf
 from gearsolid.pairs.machine import Machine
 from gearsolid.solids.assembly import assembly
 
 PAGE = "report.html"
 WHOLE = "assembly.step"
+WHOLE_FACETS = "assembly.3mf"
 
-# Distance of solids from the exact outlines [mm]: far below what any workshop measures.
+# The files of a part, in the order of its record. A part's name holds no dot, so none of them can be another part's.
+_CONTENTS = (
+    "solid of {}",
+    "facets of {}",
+    "facets of {}, with their unit",
+    "section of {}, true curves",
+    "section of {}, arcs only",
+    "section of {}, cut lines at true size",
+)
+
+# Distance of solids and drawings from the exact outlines [mm]: far below what any workshop measures.
 _TOL = 1e-4
-# Distance of STL facets from the exact outlines [mm]: below what printers resolve.
+# Distance of facets from the exact outlines [mm]: below what printers resolve.
 _FACET_TOL = 0.01
+# Distance of arcs, and of lines for a laser, from the exact outlines [mm]: below what sheet is cut to.
+_ARC_TOL = 0.002
 
 
 def make_folder(
@@ -53,7 +70,7 @@ def make_folder(
     """
     made = distinct(machine.parts)
     _check_names(made)
-    steps = ["turning the machine", "making solids", "whole machine as STEP", *(m.name for m in made), "report"]
+    steps = ["turning the machine", "making solids", "whole machine as STEP and 3MF", *(m.name for m in made), "report"]
 
     def now(step: int) -> None:
         tell(step, len(steps), steps[step])
@@ -66,12 +83,14 @@ def make_folder(
         solids = {child.name: child.shapes[0] for child in whole.children}
         now(2)
         write_step(folder / WHOLE, whole)
-        contents = {WHOLE: "the machine, its parts placed at input angle 0"}
+        write_machine_threemf(folder / WHOLE_FACETS, name, made, _FACET_TOL)
+        placed = "its parts placed at input angle 0"
+        contents = {WHOLE: f"the machine, {placed}", WHOLE_FACETS: f"facets of the machine, {placed}"}
         records = []
         for k, part in enumerate(made):
             now(3 + k)
-            records.append(_write_part(folder, part, solids[part.parts[0].name]))
-            contents |= dict(zip(records[-1].files, (f"solid of {part.name}", f"facets of {part.name}"), strict=True))
+            records.append(_write_part(folder, part, solids[part.parts[0].name], pitch_radii(machine, part.parts)))
+            contents |= {f: c.format(part.name) for f, c in zip(records[-1].files, _CONTENTS, strict=True)}
         now(len(steps) - 1)
         files = [_file(folder, file, content) for file, content in contents.items()]
         report = make_report(
@@ -92,9 +111,14 @@ def _check_names(made: Sequence[Made]) -> None:
         raise DesignError(f"two files of the folder would be called {twice[0]}.step; give one part another name")
 
 
-def _write_part(folder: Path, made: Made, solid: cq.Shape) -> PartRecord:
+def _write_part(folder: Path, made: Made, solid: cq.Shape, circles: Sequence[float]) -> PartRecord:
     step = write_step(folder / f"{made.file_name}.step", cq.Assembly(solid, name=made.name))
     stl = write_stl(folder / f"{made.file_name}.stl", made.body, _FACET_TOL)
+    facets = write_part_threemf(folder / f"{made.file_name}.3mf", made, _FACET_TOL)
+    section = flat(made.body, made.name, circles)
+    curves = write_dxf(folder / f"{made.file_name}.dxf", section, _TOL)
+    arcs = write_arc_dxf(folder / f"{made.file_name}.arcs.dxf", section, _ARC_TOL)
+    lines = write_svg(folder / f"{made.file_name}.svg", section, _ARC_TOL)
     (back,) = step.parts
     return PartRecord(
         name=made.name,
@@ -108,7 +132,9 @@ def _write_part(folder: Path, made: Made, solid: cq.Shape) -> PartRecord:
         flank_deviation=flank_deviation(back.shape, made.body),
         triangles=stl.triangles,
         facet_volume=stl.volume,
-        files=(step.path.name, stl.path.name),
+        curve_deviation=curves.deviation,
+        arc_deviation=arcs.deviation,
+        files=tuple(f.path.name for f in (step, stl, facets, curves, arcs, lines)),
     )
 
 

@@ -4,6 +4,7 @@ import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
+from gearsolid.pairs.machine import Machine
 from gearsolid.pairs.part import Body, Part
 
 
@@ -33,6 +34,18 @@ def distinct(parts: Sequence[Part]) -> tuple[Made, ...]:
     for part in parts:
         groups.setdefault(replace(part.body, z=0.0), []).append(part)
     return tuple(Made(_common_name(group), body, tuple(group)) for body, group in groups.items())
+
+
+def pitch_radii(machine: Machine, parts: Sequence[Part]) -> tuple[float, ...]:
+    """Radii of the pitch circles [mm] on which parts work together with others, rising, each once."""
+    names = {p.name for p in parts}
+    radii = set()
+    for e in machine.engagements:
+        pole = e.pitch_point
+        if pole is not None and e.must_touch:
+            centres = ((e.name_a, e.centre_a), (e.name_b, e.centre_b))
+            radii |= {round(abs(pole - centre), 4) for name, centre in centres if name in names}
+    return tuple(sorted(radii))
 
 
 def _common_name(group: list[Part]) -> str:

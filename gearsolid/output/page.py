@@ -136,6 +136,10 @@ def _part(made: Made, record: PartRecord, index: int) -> str:
         ("Read back from STEP", "one valid solid" if record.valid else "not a valid solid"),
         ("Read back from STL", f"{record.triangles} triangles, watertight"),
         ("Volume of the triangles", f"{record.facet_volume:.3f} mm³"),
+        (
+            "Read back from DXF",
+            f"cut lines within {record.curve_deviation:.1e} mm, as arcs {record.arc_deviation:.1e} mm",
+        ),
         ("Files", "<br>".join(f'<a href="{escape(f)}">{escape(f)}</a>' for f in record.files)),
     ]
     return (

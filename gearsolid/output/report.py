@@ -74,6 +74,10 @@ class PartRecord(_Record):
     flank_deviation: float = Field(description="largest distance between solid and exact outline [mm]")
     triangles: int = Field(description="triangles of the STL file [-]")
     facet_volume: float = Field(description="volume of the watertight surface read back from STL [mm3]")
+    curve_deviation: float = Field(
+        description="largest distance of the cut lines in the DXF file from the outline [mm]"
+    )
+    arc_deviation: float = Field(description="the same in the DXF file that holds arcs only [mm]")
     files: tuple[str, ...] = Field(description="its files")
 
 

@@ -10,7 +10,7 @@ from gearsolid.contact.result import Contact
 from gearsolid.curves.loops import disc
 from gearsolid.curves.outline import Outline
 from gearsolid.output.cut import material
-from gearsolid.output.made import Made, distinct
+from gearsolid.output.made import Made, distinct, pitch_radii
 from gearsolid.output.picture import path
 from gearsolid.pairs.engagement import Engagement
 from gearsolid.pairs.machine import Machine
@@ -180,13 +180,7 @@ def _mark(part: Part) -> str:
 
 
 def _pitch_circles(machine: Machine, part: Part) -> str:
-    radii = set()
-    for e in machine.engagements:
-        pole = e.pitch_point
-        if pole is not None and e.must_touch:
-            centre = {e.name_a: e.centre_a, e.name_b: e.centre_b}.get(part.name)
-            radii |= {round(abs(pole - centre), 4)} if centre is not None else set()
-    return "".join(f'<circle class="pitch" r="{r:g}"/>' for r in sorted(radii))
+    return "".join(f'<circle class="pitch" r="{r:g}"/>' for r in pitch_radii(machine, [part]))
 
 
 def _from_below(machine: Machine, made: Sequence[Made]) -> list[tuple[int, Part, int]]:

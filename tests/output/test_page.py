@@ -47,6 +47,8 @@ def html(pair, rolled, name="Two wheels"):
             flank_deviation=0.0,
             triangles=12,
             facet_volume=m.body.volume,
+            curve_deviation=0.0,
+            arc_deviation=0.0,
             files=("a.step", "a.stl"),
         )
         for m in made

@@ -13,10 +13,14 @@ import pytest
 
 from gearsolid.cli import BINDS, ROLLS, main
 from gearsolid.contact.roll import roll_test
+from gearsolid.output.dxf import read_dxf
+from gearsolid.output.flat import flat
 from gearsolid.output.report import Report
 from gearsolid.output.step import read_step
 from gearsolid.output.stl import read_stl
+from gearsolid.output.svg import read_svg
 from gearsolid.output.swap import check_replaceable, fingerprint
+from gearsolid.output.threemf import read_threemf
 from gearsolid.output.views import picture
 from gearsolid.recipe.read import read_recipe
 from gearsolid.solids.check import exact_volume
@@ -68,7 +72,7 @@ def test_every_part_reads_back_as_designed(made):
     assert sorted(n for p in report.parts for n in p.placed_as) == sorted(p.name for p in machine.parts)
     volumes = {p.name: p.body.volume for p in machine.parts}
     for part in report.parts:
-        step, stl = (folder / name for name in part.files)
+        step, stl, facets, curves, arcs, lines = (folder / name for name in part.files)
         (solid,) = read_step(step)
         assert part.valid
         assert exact_volume(solid.shape) == pytest.approx(volumes[part.placed_as[0]], rel=1e-6)
@@ -78,6 +82,16 @@ def test_every_part_reads_back_as_designed(made):
         assert surface.is_watertight
         # Facets lie within 0.01 mm of the surface.
         assert surface.volume == pytest.approx(part.exact_volume, abs=0.01 * surface.area)
+        ((name, same),) = read_threemf(facets).solids
+        assert name == part.name
+        assert same.volume == pytest.approx(surface.volume, rel=1e-6)
+        body = next(p.body for p in machine.parts if p.name == part.placed_as[0])
+        area = flat(body, part.name).area
+        assert read_dxf(curves).area == pytest.approx(area, rel=1e-6)
+        assert read_dxf(arcs).area == pytest.approx(area, rel=5e-4)
+        assert read_svg(lines).area == pytest.approx(area, rel=5e-4)
+        assert 0 <= part.curve_deviation <= 1e-4
+        assert 0 <= part.arc_deviation <= 0.002
 
 
 def test_the_assembly_holds_every_part_in_its_place(made):
@@ -89,6 +103,9 @@ def test_the_assembly_holds_every_part_in_its_place(made):
         (x, y, z), _ = placed[part.name].location.toTuple()
         assert complex(x, y) == pytest.approx(part.motion.centre(0.0), abs=1e-6)
         assert z == pytest.approx(part.body.z, abs=1e-6)
+    facets = read_threemf(folder / "assembly.3mf")
+    assert len(facets.placed) == len(machine.parts)
+    assert len(facets.solids) == len(report_of(folder).parts)
 
 
 class _Page(HTMLParser):
