@@ -303,3 +303,34 @@ def test_a_shaft_hole_of_any_form(tmp_path, keys, callout):
 def test_what_a_form_cannot_have_is_refused(tmp_path, keys, words):
     text = STAGE.replace("bore = 12.0 ", f"{keys} ").replace("chamfer = 0.4\n", "")
     assert words in refused(tmp_path, text, (DesignError, RecipeError))
+
+
+CLOCK = (RECIPES / "clock-pair.toml").read_text(encoding="utf-8")
+
+
+def test_crossings_and_holes_go_through_the_wheel_and_into_the_report(tmp_path):
+    path = tmp_path / "recipe.toml"
+    drilled = "[wheel.holes]\ncount = 4\ncircle_diameter = 6.5\ndiameter = 0.8\nangle = 45.0\n"
+    path.write_text(f"{CLOCK}\n{drilled}", encoding="utf-8")
+    recipe = read_recipe(path)
+    crossings, holes = recipe.machine.parts[0].body.holes
+    assert (crossings.order, holes.order) == (5, 4)
+    assert recipe.rows["wheel.crossings"]["arms"] == "5"
+    assert recipe.rows["wheel.holes"]["circle_diameter"] == "6.5 mm"
+    assert "crossings" not in recipe.rows["wheel"]
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "words"),
+    [
+        ("arms = 5", "arms = 2", "wheel.crossings.arms = 2: must be a whole number"),
+        ("arms = 5", "amrs = 5", 'wheel.crossings.amrs = 5: no such key; did you mean "arms"?'),
+        ("fillet = 0.6", "", "wheel.crossings.fillet: missing"),
+        ("fillet = 0.6", "fillet = 5.0", "wheel: crossings: between the hub circle"),
+        ("rim_diameter = 27.0", "rim_diameter = 30.0", "wheel: openings reach from 4.5 to 15 mm"),
+        ("hub_diameter = 9.0", "hub_diameter = 3.9", "the bore, which reaches 2 mm"),
+    ],
+)
+def test_crossings_that_cannot_be_are_refused(tmp_path, old, new, words):
+    assert old in CLOCK
+    assert words in refused(tmp_path, CLOCK.replace(old, new, 1), (DesignError, RecipeError))

@@ -22,6 +22,7 @@ class Blank:
         bore: shaft hole, or None.
         rim_diameter: outside diameter of an annulus [mm]; None takes two tooth depths beyond the root circle.
         z: height of the bottom face [mm].
+        openings: crossings, bolt holes and the like, each wholly inside the body, material on their left.
         course: of helical teeth up the face width: `HELICAL` or `DOUBLE_HELICAL`, whose lower half has the member's
             own hand; straight teeth have none.
     """
@@ -30,6 +31,7 @@ class Blank:
     bore: ShaftHole | None = None
     rim_diameter: float | None = None
     z: float = 0.0
+    openings: tuple[Outline, ...] = ()
     course: tuple[int, ...] = HELICAL
 
     def twists(self, rate: float) -> tuple[float, ...]:
@@ -52,8 +54,8 @@ def body_of(outline: Outline, blank: Blank, rate: float = 0.0) -> Body:
         rate: turn of the section per height [rad/mm], positive right-hand; 0 for straight teeth.
 
     Raises:
-        DesignError: the bore or keyway reaches the root circle, a ring is given a bore or a wheel a rim, or the rim
-            leaves no material behind the teeth.
+        DesignError: the bore, keyway or an opening reaches the root circle, an opening the bore, a ring is given a bore
+            or a wheel a rim, or the rim leaves no material behind the teeth.
     """
     if is_ring(outline):
         return _ring_body(outline, blank, rate)
@@ -67,7 +69,8 @@ def body_of(outline: Outline, blank: Blank, rate: float = 0.0) -> Body:
             f"the bore (with keyways, corners, chamfer) reaches {blank.bore.reach:.4g} mm from the axis, but the root "
             f"circle has a radius of {outline.r_min:.4g} mm: take a smaller bore, no key, or more teeth"
         )
-    return Body(outline, blank.face_width, bore=blank.bore, z=blank.z, twists=blank.twists(rate))
+    _check_openings(blank, ("the bore", blank.bore.reach if blank.bore else 0.0), ("the root circle", outline.r_min))
+    return Body(outline, blank.face_width, blank.openings, blank.bore, z=blank.z, twists=blank.twists(rate))
 
 
 def _ring_body(outline: Outline, blank: Blank, rate: float) -> Body:
@@ -79,4 +82,16 @@ def _ring_body(outline: Outline, blank: Blank, rate: float) -> Body:
         raise DesignError(
             f"the rim diameter is {rim:g} mm, but the root circle of the annulus has {least:.4f} mm: take a larger rim"
         )
-    return Body(disc(rim / 2), blank.face_width, holes=(outline,), z=blank.z, twists=blank.twists(rate))
+    _check_openings(blank, ("the root circle", outline.r_max), ("the rim", rim / 2))
+    return Body(disc(rim / 2), blank.face_width, holes=(outline, *blank.openings), z=blank.z, twists=blank.twists(rate))
+
+
+def _check_openings(blank: Blank, inside: tuple[str, float], outside: tuple[str, float]) -> None:
+    """Refuse openings that break through to a boundary, each given by name and radius [mm]."""
+    for opening in blank.openings:
+        if not inside[1] < opening.r_min < opening.r_max < outside[1]:
+            raise DesignError(
+                f"openings reach from {opening.r_min:.4g} to {opening.r_max:.4g} mm from the axis; they must lie "
+                f"between {inside[0]}, which reaches {inside[1]:.4g} mm with its corners, and {outside[0]} of "
+                f"{outside[1]:.4g} mm radius: move them, or make them smaller"
+            )

@@ -1,6 +1,7 @@
 """The tables of toothed members."""
 
 from gearsolid.pairs.blank import Blank
+from gearsolid.recipe.openings import Opened
 from gearsolid.recipe.shaft_holes import Profiled
 from gearsolid.recipe.table import Table, entry
 from gearsolid.teeth.cycloidal import CycloidalGear
@@ -24,7 +25,7 @@ class _Involute(_Size):
     )
 
 
-class InvoluteTable(Profiled, _Involute):
+class InvoluteTable(Opened, Profiled, _Involute):
     """An external involute member."""
 
     profile_shift: float = entry("profile shift coefficient; positive makes the tooth thicker", default=0.0)
@@ -47,7 +48,7 @@ class InvoluteTable(Profiled, _Involute):
 
     def blank(self) -> Blank:
         """The body before teeth."""
-        return Blank(self.face_width, self.hole())
+        return Blank(self.face_width, self.hole(), openings=self.openings())
 
 
 class RingTable(_Involute):
@@ -79,17 +80,17 @@ class RingTable(_Involute):
         return Blank(self.face_width, rim_diameter=self.rim_diameter)
 
 
-class ClockTable(Profiled, _Size):
+class ClockTable(Opened, Profiled, _Size):
     """A wheel or pinion of a clock, whose teeth follow from the counts."""
 
     teeth: int = entry("number of teeth or leaves", ge=6)
 
     def blank(self) -> Blank:
         """The body before teeth."""
-        return Blank(self.face_width, self.hole())
+        return Blank(self.face_width, self.hole(), openings=self.openings())
 
 
-class CycloidalTable(Profiled, _Size):
+class CycloidalTable(Opened, Profiled, _Size):
     """A cycloidal member of a clock or instrument."""
 
     teeth: int = entry("number of teeth or leaves", ge=5)
@@ -124,4 +125,4 @@ class CycloidalTable(Profiled, _Size):
 
     def blank(self) -> Blank:
         """The body before teeth."""
-        return Blank(self.face_width, self.hole())
+        return Blank(self.face_width, self.hole(), openings=self.openings())

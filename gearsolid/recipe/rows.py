@@ -12,17 +12,18 @@ def rows(table: Table) -> dict[str, dict[str, str]]:
     Returns:
         Table name -> key -> value as text; keys of the top level stand under "machine".
     """
-    found: dict[str, dict[str, str]] = {"machine": {}}
+    return _gathered(table, "machine", "")
+
+
+def _gathered(table: Table, name: str, prefix: str) -> dict[str, dict[str, str]]:
+    """Rows of a table under its name, and of the tables in it, which `prefix` goes before."""
+    found: dict[str, dict[str, str]] = {name: {}}
     for key, field in type(table).model_fields.items():
         value = getattr(table, key)
         if isinstance(value, Table):
-            found[key] = {
-                k: _text(getattr(value, k), unit(f))
-                for k, f in type(value).model_fields.items()
-                if getattr(value, k) is not None
-            }
+            found |= _gathered(value, f"{prefix}{key}", f"{prefix}{key}.")
         elif value is not None:
-            found["machine"][key] = _text(value, unit(field))
+            found[name][key] = _text(value, unit(field))
     return found
 
 

@@ -8,6 +8,7 @@ from gearsolid.curves.primitives import Segment
 from gearsolid.pairs.part import Body, Boss
 from gearsolid.shop.bore import Bore
 from gearsolid.shop.keys_inch import inch_key_for_bore
+from gearsolid.shop.openings import Crossings
 from gearsolid.shop.profile_hole import d_hole, double_d_hole, hexagon_hole, square_hole
 from gearsolid.teeth.cycloidal import CycloidalGear
 from gearsolid.teeth.internal import InternalGear
@@ -59,6 +60,9 @@ TOOTHED = {
         CycloidDisc(11, 1.5, 50, 5).outline, 10, holes=(holes(6, 25, 6.5),), bore=Bore(20)
     ),
     "clock wheel": Body(CycloidalGear(60, 1.0, 4.0, 15.0, 1.3, 1.6).outline, 2, bore=Bore(4)),
+    "crossed clock wheel": Body(
+        CycloidalGear(60, 1.0, 4.0, 15.0, 1.3, 1.6).outline, 2, (Crossings(5, 14, 52, 3.6, 1.2, 2.4).outline,), Bore(4)
+    ),
     "clock pinion": Body(CycloidalGear(8, 1.0, 15.0, 2.0, 0.8, 1.6).outline, 6, bore=Bore(2)),
 }
 
