@@ -14,6 +14,7 @@ from gearsolid.errors import DesignError, GearsolidError, RecipeError
 
 if TYPE_CHECKING:
     from gearsolid.contact.result import RollResult
+    from gearsolid.recipe import Recipe
 
 ROLLS, BINDS, BAD_INPUT, FAILED, INTERRUPTED = 0, 1, 2, 3, 130
 
@@ -94,7 +95,13 @@ def _roll(chosen: argparse.Namespace) -> int:
     recipe = read_recipe(chosen.recipe)
     result = roll_test(recipe.machine)
     print(roll_text(recipe.name, recipe.machine, result))
+    _print_notices(recipe)
     return _code(result)
+
+
+def _print_notices(recipe: "Recipe") -> None:
+    for notice in recipe.notices:
+        print(f"Note: {notice.sentence}.")
 
 
 def _make(chosen: argparse.Namespace) -> int:
@@ -110,6 +117,7 @@ def _make(chosen: argparse.Namespace) -> int:
 
         result = make_folder(recipe.name, recipe.machine, recipe.rows, chosen.out, tell)
     print(f"{VERDICTS[result.verdict]}. {finding(result.worst)}")
+    _print_notices(recipe)
     print(f"Folder {chosen.out} is written; open {chosen.out / 'report.html'} to see it turn.")
     return _code(result)
 

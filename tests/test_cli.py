@@ -41,6 +41,14 @@ def test_contact_within_the_tolerance_counts_as_rolling_and_is_said(capsys, tmp_
     assert "Contact within 1e-05 mm counts as rolling." in out
 
 
+def test_what_is_thin_is_said_below_the_verdict(capsys, tmp_path):
+    recipe = tmp_path / "thin.toml"
+    clock = (ROOT / "recipes" / "clock-pair.toml").read_text()
+    recipe.write_text(clock.replace("rim_diameter = 27.0", "rim_diameter = 28.0"))
+    assert main(["roll", str(recipe)]) == ROLLS
+    assert "Note: wheel: the rim between openings and root circle is 0.756 mm; 1 mm" in capsys.readouterr().out
+
+
 @pytest.mark.parametrize("command", ["roll", "make"])
 @pytest.mark.parametrize("text", [None, "[", 'machine = "planetary"'], ids=["missing", "not TOML", "incomplete"])
 def test_bad_recipes_are_refused_in_a_sentence(capsys, tmp_path, command, text):

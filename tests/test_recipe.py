@@ -120,7 +120,7 @@ MISTAKES = {
     "mistyped word": ('fixed = "ring"', 'fixed = "rong"', ['"sun" or "ring" or "carrier"', 'did you mean "ring"?']),
     "mistyped table": ("[sun]", "[sum]", ['did you mean "sun"?', "sun: missing"]),
     "value for a table": ("[ring]", "ring = 3\n[other]", ["ring = 3: must be a table", "other"]),
-    "key without bore": ("bore = 8.0", "", ["sun: a key, chamfer or fit is given without a bore"]),
+    "key without bore": ("bore = 8.0", "", ["sun: a key, chamfer, fit or made_by is given without a bore"]),
     "empty name": ('name = "Pump drive stage"', 'name = ""', ['name = "": must be a text']),
     "two mistakes": (
         "teeth = 18\nface_width = 12.0",
@@ -291,7 +291,7 @@ def test_a_shaft_hole_of_any_form(tmp_path, keys, callout):
     ("keys", "words"),
     [
         ('bore_form = "D"', "given without a bore"),
-        ('bore_form = "D"\nbore = 6.0\nkey = true', "key, chamfer and fit are for a round bore"),
+        ('bore_form = "D"\nbore = 6.0\nkey = true', "key, chamfer, fit and made_by are for a round bore"),
         ('bore_form = "double D"\nbore = 6.0', "needs across_flat"),
         ("across_flat = 5.0\nbore = 6.0", "across_flat is for"),
         ('bore_form = "D"\ncorner_relief = 0.3\nbore = 6.0', "corner_relief is for"),
@@ -334,3 +334,19 @@ def test_crossings_and_holes_go_through_the_wheel_and_into_the_report(tmp_path):
 def test_crossings_that_cannot_be_are_refused(tmp_path, old, new, words):
     assert old in CLOCK
     assert words in refused(tmp_path, CLOCK.replace(old, new, 1), (DesignError, RecipeError))
+
+
+def test_a_printed_bore_is_drawn_larger_and_named_by_its_fit(tmp_path):
+    path = tmp_path / "recipe.toml"
+    printed = 'fit = "H7"\ndrawn = "middle"\nmade_by = "FDM"\nbore = 12.0 '
+    path.write_text(STAGE.replace("bore = 12.0 ", printed), encoding="utf-8")
+    planet = next(p for p in read_recipe(path).machine.parts if p.name.startswith("planet"))
+    assert planet.body.bore.diameter == pytest.approx(12.009 + 0.2)
+    assert planet.body.bore.callout.startswith("⌀ 12 H7")
+
+
+def test_what_is_thin_is_noted_and_what_is_shipped_is_not(tmp_path):
+    path = tmp_path / "recipe.toml"
+    path.write_text(CLOCK.replace("rim_diameter = 27.0", "rim_diameter = 28.0"), encoding="utf-8")
+    assert [n.code for n in read_recipe(path).notices] == ["thin-rim"]
+    assert read_recipe(RECIPES / "clock-pair.toml").notices == ()

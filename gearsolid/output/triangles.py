@@ -128,36 +128,55 @@ def body_triangles(body: Body, tol: float = 0.01) -> Triangles:
         ToleranceError: a boundary cannot be followed that closely.
     """
     surface = _Surface()
-    low, top = body.z, body.z + body.width
-    sides = [
-        [surface.ring(flat * np.exp(1j * turn), low + height) for height, turn in levels]
-        for outline in (body.outer, *body.holes)
-        for flat, levels in _sides(body, outline, tol)
-    ]
+    top = body.z + body.width
+    sides = [side for o in (body.outer, *body.holes) for side in _sides(surface, body, o, tol)]
     raised = [
         (boss, surface.ring(flat, top), surface.ring(flat, top + boss.height))
         for boss in body.bosses
         for flat in polygons(boss.outline, tol)
     ]
     bore = [surface.ring(flat, body.z + z) for flat, z in _bore_levels(body.bore, body.bore_length, tol)]
-    for lower, upper in (*(p for s in sides for p in pairwise(s)), *(r[1:] for r in raised), *pairwise(bore)):
+    for lower, upper in (*(r[1:] for r in raised), *pairwise(bore)):
         surface.wall(lower, upper)
     outer, *holes = sides
     surface.face(outer[0], [*(h[0] for h in holes), *bore[:1]], up=False)
-    surface.face(outer[-1], [*(h[-1] for h in holes), *(r[1] for r in raised), *([] if body.hub else bore[-1:])])
+    surface.face(outer[1], [*(h[1] for h in holes), *(r[1] for r in raised), *([] if body.hub else bore[-1:])])
     for boss, _, upper in raised:
         surface.face(upper, bore[-1:] if boss is body.hub else [])
     return surface.done()
 
 
-def _sides(body: Body, outline: Outline, tol: float) -> list[tuple[Points, list[tuple[float, float]]]]:
-    """Polygons of a side's section, and the heights [mm] and turns [rad] at which their corners stand."""
-    if not (body.twists and is_toothed(outline)):
-        return [(flat, [(0.0, 0.0), (body.width, 0.0)]) for flat in polygons(outline, tol)]
+def _sides(surface: _Surface, body: Body, outline: Outline, tol: float) -> Iterator[tuple[_Ring, _Ring]]:
+    """Walls on the loops of an outline; the lowest and highest ring of each."""
+    if body.twists and is_toothed(outline):
+        yield _toothed_side(surface, body, outline, tol)
+        return
+    for flat in polygons(outline, tol):
+        lower, upper = surface.ring(flat, body.z), surface.ring(flat, body.z + body.width)
+        surface.wall(lower, upper)
+        yield lower, upper
+
+
+def _toothed_side(surface: _Surface, body: Body, outline: Outline, tol: float) -> tuple[_Ring, _Ring]:
     # Half the tolerance goes to the chords of the section, half to the turn between two levels.
     (flat,) = polygons(outline, tol / 2)
     step = _turn_step(float(np.max(np.abs(np.roll(flat, -1) - flat))), outline.r_max, tol / 2)
-    return [(flat, list(_stepped(body.levels, step)))]
+    courses = [
+        [surface.ring(flat * np.exp(1j * turn), body.z + height) for height, turn in _stepped(levels, step)]
+        for levels in body.courses
+    ]
+    for course in courses:
+        for lower, upper in pairwise(course):
+            surface.wall(lower, upper)
+    if body.groove:
+        (_, (low, _)), ((high, _), _) = body.courses
+        (round_flat,) = polygons(body.groove.floor(outline), tol)
+        floor = surface.ring(round_flat, body.z + low), surface.ring(round_flat, body.z + high)
+        surface.wall(*floor)
+        for (first, second), up in (((courses[0][-1], floor[0]), True), ((courses[1][0], floor[1]), False)):
+            outer, inner = (first, second) if outline.area > 0 else (second, first)
+            surface.face(outer, [inner], up=up)
+    return courses[0][0], courses[-1][-1]
 
 
 def _turn_step(chord: float, radius: float, tol: float) -> float:

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 from gearsolid.curves.loops import disc
 from gearsolid.curves.outline import Outline
 from gearsolid.errors import DesignError
-from gearsolid.pairs.part import Body
+from gearsolid.pairs.part import Body, Groove
 from gearsolid.shop.shaft_hole import ShaftHole
 
 # How the teeth of a helical body run up the face width: signs of the helix over equally long stretches.
@@ -25,6 +25,7 @@ class Blank:
         openings: crossings, bolt holes and the like, each wholly inside the body, material on their left.
         course: of helical teeth up the face width: `HELICAL` or `DOUBLE_HELICAL`, whose lower half has the member's
             own hand; straight teeth have none.
+        groove: relief between the two courses of double helical teeth, or None.
     """
 
     face_width: float
@@ -33,10 +34,11 @@ class Blank:
     z: float = 0.0
     openings: tuple[Outline, ...] = ()
     course: tuple[int, ...] = HELICAL
+    groove: Groove | None = None
 
     def twists(self, rate: float) -> tuple[float, ...]:
         """Turns of the stretches [rad], given the turn per height [rad/mm]; none for straight teeth."""
-        stretch = self.face_width / len(self.course)
+        stretch = (self.face_width - (self.groove.width if self.groove else 0.0)) / len(self.course)
         return tuple(sign * rate * stretch for sign in self.course) if rate else ()
 
 
@@ -70,7 +72,9 @@ def body_of(outline: Outline, blank: Blank, rate: float = 0.0) -> Body:
             f"circle has a radius of {outline.r_min:.4g} mm: take a smaller bore, no key, or more teeth"
         )
     _check_openings(blank, ("the bore", blank.bore.reach if blank.bore else 0.0), ("the root circle", outline.r_min))
-    return Body(outline, blank.face_width, blank.openings, blank.bore, z=blank.z, twists=blank.twists(rate))
+    return Body(
+        outline, blank.face_width, blank.openings, blank.bore, z=blank.z, twists=blank.twists(rate), groove=blank.groove
+    )
 
 
 def _ring_body(outline: Outline, blank: Blank, rate: float) -> Body:
@@ -83,7 +87,14 @@ def _ring_body(outline: Outline, blank: Blank, rate: float) -> Body:
             f"the rim diameter is {rim:g} mm, but the root circle of the annulus has {least:.4f} mm: take a larger rim"
         )
     _check_openings(blank, ("the root circle", outline.r_max), ("the rim", rim / 2))
-    return Body(disc(rim / 2), blank.face_width, holes=(outline, *blank.openings), z=blank.z, twists=blank.twists(rate))
+    return Body(
+        disc(rim / 2),
+        blank.face_width,
+        holes=(outline, *blank.openings),
+        z=blank.z,
+        twists=blank.twists(rate),
+        groove=blank.groove,
+    )
 
 
 def _check_openings(blank: Blank, inside: tuple[str, float], outside: tuple[str, float]) -> None:

@@ -1,16 +1,20 @@
 """A part of a machine: the flat section it is made of, its width, and how it moves."""
 
 from dataclasses import dataclass
-from itertools import accumulate
+from itertools import accumulate, chain
 from math import isfinite
 
 import numpy as np
 
 from gearsolid.curves.curve import Reals
+from gearsolid.curves.loops import disc, hole
 from gearsolid.curves.outline import Outline
 from gearsolid.errors import DesignError
 from gearsolid.pairs.motion import Motion
 from gearsolid.shop.shaft_hole import ShaftHole
+
+# Height above the bottom face [mm] and turn there [rad].
+Level = tuple[float, float]
 
 
 @dataclass(frozen=True)
@@ -30,6 +34,31 @@ class Boss:
     def __post_init__(self) -> None:
         if not self.height > 0:
             raise DesignError(f"a boss is {self.height:g} mm high; it must be above 0")
+
+
+@dataclass(frozen=True)
+class Groove:
+    """A relief turned into the teeth at the middle of the width, for the tools of double helical teeth to run out in.
+
+    Args:
+        width: [mm] along the axis.
+        depth: of its floor beyond the root circle [mm].
+
+    Raises:
+        DesignError: width or depth is not above 0.
+    """
+
+    width: float
+    depth: float
+
+    def __post_init__(self) -> None:
+        for name, value in (("wide", self.width), ("deep below the root circle", self.depth)):
+            if not value > 0:
+                raise DesignError(f"the relief groove is {value:g} mm {name}; it must be above 0")
+
+    def floor(self, rim: Outline) -> Outline:
+        """The circle left where the teeth of a rim are turned away."""
+        return disc(rim.r_min - self.depth) if rim.area > 0 else hole(rim.r_max + self.depth)
 
 
 def is_toothed(outline: Outline) -> bool:
@@ -53,6 +82,7 @@ class Body:
         twists: turn of the toothed rims [rad] over each of equally long stretches of the width, from the bottom up,
             positive right-hand: one for helical teeth, two opposite ones for double helical; none for straight teeth.
             The outlines are the section at the bottom face.
+        groove: relief between the two stretches of double helical teeth, or None.
     """
 
     outer: Outline
@@ -62,6 +92,7 @@ class Body:
     bosses: tuple[Boss, ...] = ()
     z: float = 0.0
     twists: tuple[float, ...] = ()
+    groove: Groove | None = None
 
     def __post_init__(self) -> None:
         if not self.width > 0:
@@ -73,7 +104,7 @@ class Body:
         opening = next((h for h in self.holes if h.is_chain), None)
         if opening and (self.bore or hubs):
             raise DesignError("a body with an opening round the axis (an annulus) has no place for a bore or a hub")
-        solid = min(o.r_min for o in (self.outer, *(h.outline for h in hubs)))
+        solid = min(o.r_min for o in (self.outer, *(h.outline for h in hubs), *self._floors))
         if self.bore:
             if not self.bore.reach < solid:
                 raise DesignError(
@@ -85,6 +116,16 @@ class Body:
             self.bore.volume(self.bore_length)
 
     def _check_twists(self) -> None:
+        if self.groove and len(self.twists) != 2:
+            raise DesignError(
+                f"a relief groove is given to teeth with {len(self.twists)} helices; it parts the two of double "
+                "helical teeth: leave it out"
+            )
+        if self.groove and not self.groove.width < self.width:
+            raise DesignError(
+                f"the relief groove is {self.groove.width:g} mm wide; it must be below the face width, "
+                f"{self.width:g} mm"
+            )
         if not self.twists:
             return
         if not all(isfinite(t) for t in self.twists):
@@ -95,30 +136,43 @@ class Body:
             raise DesignError(
                 "a body without a toothed rim is twisted; only flanks make a rim that turns: leave it out"
             )
-        for rim in toothed:
-            for other in rims:
-                if not is_toothed(other) and other.r_min < rim.r_max and other.r_max > rim.r_min:
-                    raise DesignError(
-                        f"a straight boundary between radii {other.r_min:.5g} and {other.r_max:.5g} mm lies beside "
-                        f"helical teeth between {rim.r_min:.5g} and {rim.r_max:.5g} mm; keep it inside or outside them"
-                    )
+        inner = min(o.r_min for o in (*toothed, *self._floors))
+        outer = max(o.r_max for o in (*toothed, *self._floors))
+        for other in rims:
+            if not is_toothed(other) and other.r_min < outer and other.r_max > inner:
+                raise DesignError(
+                    f"a straight boundary between radii {other.r_min:.5g} and {other.r_max:.5g} mm lies beside "
+                    f"helical teeth between {inner:.5g} and {outer:.5g} mm; keep it inside or outside them"
+                )
 
     @property
-    def levels(self) -> tuple[tuple[float, float], ...]:
-        """Heights above the bottom face [mm] between which toothed rims turn steadily, and their turns there [rad]."""
+    def _floors(self) -> list[Outline]:
+        """Floors of the relief groove."""
+        return [self.groove.floor(o) for o in (self.outer, *self.holes) if is_toothed(o)] if self.groove else []
+
+    @property
+    def courses(self) -> tuple[tuple[Level, ...], ...]:
+        """Stretches of teeth from the bottom up, parted by the groove, each as the levels it turns steadily between.
+
+        A level is a height above the bottom face [mm] and the turn of toothed rims there [rad].
+        """
+        gap = self.groove.width if self.groove else 0.0
         stretches = len(self.twists) or 1
-        turns = accumulate(self.twists or (0.0,), initial=0.0)
-        return tuple((self.width * k / stretches, turn) for k, turn in enumerate(turns))
+        stretch = (self.width - gap) / stretches
+        turns = tuple(accumulate(self.twists or (0.0,), initial=0.0))
+        if not self.groove:
+            return (tuple((stretch * k, turn) for k, turn in enumerate(turns)),)
+        return ((0.0, 0.0), (stretch, turns[1])), ((stretch + gap, turns[1]), (self.width, turns[2]))
 
     def turn_at(self, height: Reals) -> Reals:
         """Turn of toothed rims [rad] at heights above the bottom face [mm], any shape."""
-        heights, turns = zip(*self.levels, strict=True)
+        heights, turns = zip(*chain.from_iterable(self.courses), strict=True)
         return np.interp(height, heights, turns)
 
     @property
     def twist_rate(self) -> float:
         """Turn of toothed rims per height at the bottom face [rad/mm]; 0 for straight teeth."""
-        (_, _), (height, turn), *_ = self.levels
+        _, (height, turn), *_ = self.courses[0]
         return turn / height
 
     @property
@@ -134,9 +188,14 @@ class Body:
     @property
     def volume(self) -> float:
         """Exact volume [mm3]: areas by Green's theorem times widths, less the bore."""
-        area = self.outer.area + sum(h.area for h in self.holes)
+        rims = (self.outer, *self.holes)
+        area = sum(o.area for o in rims)
         bored = self.bore.volume(self.bore_length) if self.bore else 0.0
-        return area * self.width - bored + sum(b.outline.area * b.height for b in self.bosses)
+        relief = 0.0
+        if self.groove:
+            turned = sum(o.area - self.groove.floor(o).area for o in rims if is_toothed(o))
+            relief = turned * self.groove.width
+        return area * self.width - relief - bored + sum(b.outline.area * b.height for b in self.bosses)
 
 
 @dataclass(frozen=True)

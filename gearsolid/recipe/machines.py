@@ -9,7 +9,9 @@ from pydantic import model_validator
 
 from gearsolid.pairs.blank import DOUBLE_HELICAL, HELICAL, Blank, body_of
 from gearsolid.pairs.eccentric_shaft import EccentricShaft
+from gearsolid.pairs.helix import member_body
 from gearsolid.pairs.machine import Machine
+from gearsolid.pairs.part import Groove
 from gearsolid.pairs.planetary import PlanetaryStage
 from gearsolid.pairs.reducer import OutputRollers, PinWheelReducer, Stack
 from gearsolid.pairs.spur_pair import SpurPair
@@ -74,9 +76,19 @@ class InvoluteMemberTable(_Named, InvoluteTable):
         "that of the lower half",
         default=False,
     )
+    groove_width: float | None = entry(
+        "width of a relief groove between the two halves of double helical teeth, for hob or cutter to run out in; no "
+        "groove when left out",
+        "mm",
+        None,
+        gt=0,
+    )
+    groove_depth: float = entry("depth of that groove below the root circle", "mm", 0.5, gt=0)
 
     @model_validator(mode="after")
     def _needs_helix(self) -> Self:
+        if self.groove_width and not self.double_helical:
+            raise ValueError("groove_width needs double_helical = true; other teeth have no middle to relieve")
         if self.double_helical and not self.helix_angle:
             raise ValueError(
                 "double_helical needs a helix_angle that is not 0; 20 to 30 deg are usual, common practice"
@@ -85,7 +97,8 @@ class InvoluteMemberTable(_Named, InvoluteTable):
 
     def blank(self) -> Blank:
         """The body before teeth."""
-        return replace(super().blank(), course=DOUBLE_HELICAL if self.double_helical else HELICAL)
+        groove = Groove(self.groove_width, self.groove_depth) if self.groove_width else None
+        return replace(super().blank(), course=DOUBLE_HELICAL if self.double_helical else HELICAL, groove=groove)
 
 
 class CycloidalMemberTable(_Named, CycloidalTable):
@@ -365,7 +378,7 @@ def _made(name: str, table: _MemberTable, module: float, system: float) -> tuple
     """
     with of_table(name):
         member, blank = table.member(module, system), table.blank()
-        body_of(member.outline, blank)
+        member_body(member, blank)
     return member, blank
 
 

@@ -9,9 +9,11 @@ from pydantic import ValidationError
 
 from gearsolid.errors import DesignError, RecipeError
 from gearsolid.pairs.machine import Machine
+from gearsolid.pairs.notices import part_notices
 from gearsolid.recipe.machines import MACHINES, MachineTable
 from gearsolid.recipe.mistakes import nearest, sentences, shown
 from gearsolid.recipe.rows import rows
+from gearsolid.shop.notice import Notice
 
 Rows = dict[str, dict[str, str]]
 
@@ -29,6 +31,7 @@ class Recipe:
     name: str
     machine: Machine
     rows: Rows
+    notices: tuple[Notice, ...] = ()
 
 
 def read_recipe(path: Path) -> Recipe:
@@ -46,8 +49,8 @@ def read_recipe(path: Path) -> Recipe:
     try:
         machine = table.build()
         # Bodies are made on first use; a recipe whose bodies cannot exist is refused here, not half way through.
-        _ = machine.parts
-        return Recipe(table.name, machine, rows(table))
+        module = getattr(table, "module", None)
+        return Recipe(table.name, machine, rows(table), part_notices(machine.parts, module, None))
     except DesignError as error:
         raise DesignError(f"{path}: {error}") from error
 

@@ -9,6 +9,7 @@ from gearsolid.shop.bore import Bore
 from gearsolid.shop.fits import hole_limits
 from gearsolid.shop.keys import KeySeat, key_for_bore
 from gearsolid.shop.keys_inch import KeySection, inch_key_for_bore
+from gearsolid.shop.processes import ProcessName, process
 from gearsolid.shop.profile_hole import d_hole, double_d_hole, hexagon_hole, square_hole
 from gearsolid.shop.shaft_hole import ShaftHole
 
@@ -33,11 +34,17 @@ class Bored(Table):
         "size at which the solid's bore is drawn: the nominal one, or half way between the limits of its fit",
         default="nominal",
     )
+    made_by: ProcessName | None = entry(
+        "process whose holes come out small: the bore is drawn larger by what is usually added, and named by its fit",
+        default=None,
+    )
 
     @model_validator(mode="after")
     def _needs_bore(self) -> Self:
-        if self.bore is None and (self.key or self.chamfer or self.fit):
-            raise ValueError("a key, chamfer or fit is given without a bore; add the key bore, the diameter in mm")
+        if self.bore is None and (self.key or self.chamfer or self.fit or self.made_by):
+            raise ValueError(
+                "a key, chamfer, fit or made_by is given without a bore; add the key bore, the diameter in mm"
+            )
         if not self.key and (self.second_key or self.key_table != "metric"):
             raise ValueError("second_key or key_table is given without a key; add key = true")
         if self.drawn == "middle" and not self.fit:
@@ -50,7 +57,8 @@ class Bored(Table):
             return None
         fit = hole_limits(self.bore, self.fit) if self.fit else None
         diameter = fit.middle if fit and self.drawn == "middle" else self.bore
-        return Bore(diameter, self._key_seat(self.bore), self.chamfer, fit, self.second_key)
+        growth = process(self.made_by).hole_growth if self.made_by else 0.0
+        return Bore(diameter + growth, self._key_seat(self.bore), self.chamfer, fit, self.second_key)
 
     def _key_seat(self, bore: float) -> KeySeat | None:
         """The seat the tables give to a nominal bore [mm]."""
@@ -91,8 +99,10 @@ class Profiled(Bored):
         )
         if form != "round" and self.bore is None:
             raise ValueError(f'bore_form = "{form}" is given without a bore; add the key bore, its size in mm')
-        if form != "round" and (self.key or self.chamfer or self.fit):
-            raise ValueError(f'key, chamfer and fit are for a round bore; leave them out with bore_form = "{form}"')
+        if form != "round" and (self.key or self.chamfer or self.fit or self.made_by):
+            raise ValueError(
+                f'key, chamfer, fit and made_by are for a round bore; leave them out with bore_form = "{form}"'
+            )
         if self.across_flat is not None and not flats:
             raise ValueError('across_flat is for bore_form = "D" or "double D"; leave it out or change the form')
         if form == "double D" and self.across_flat is None:

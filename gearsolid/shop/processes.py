@@ -14,9 +14,12 @@ from math import isfinite
 from typing import Any, Literal
 
 from gearsolid.errors import DesignError
-from gearsolid.shop.finding import Finding
+from gearsolid.shop.notice import Notice
 
 Clearance = Literal["press", "slide", "moving"]
+ProcessName = Literal[
+    "FDM", "SLA", "SLS", "MJF", "laser cutting", "waterjet cutting", "wire EDM", "hobbing", "moulding"
+]
 
 
 @dataclass(frozen=True)
@@ -123,39 +126,39 @@ class Process:
         """Least thickness of a tooth of a part of this thickness [mm]."""
         return max(self.min_tooth, self.min_tooth_per_thickness * thickness)
 
-    def module_findings(self, module: float) -> tuple[Finding, ...]:
+    def module_notices(self, module: float) -> tuple[Notice, ...]:
         """What is to say of a module [mm] made by this process."""
         if module < self.module_smallest:
             sentence = (
                 f"a module of {module:g} mm is below the smallest that {self.name} makes, {self.module_smallest:g} mm: "
                 "take a larger module or another process"
             )
-            return (Finding("module-too-small", sentence, module, self.module_smallest),)
+            return (Notice("module-too-small", sentence, module, self.module_smallest),)
         if module < self.module_comfortable:
             sentence = (
                 f"a module of {module:g} mm is made by {self.name} only with care; from {self.module_comfortable:g} mm "
                 "on it is easy: make a test piece first"
             )
-            return (Finding("module-small", sentence, module, self.module_comfortable),)
+            return (Notice("module-small", sentence, module, self.module_comfortable),)
         return ()
 
-    def wall_findings(self, wall: float, place: str) -> tuple[Finding, ...]:
+    def wall_notices(self, wall: float, place: str) -> tuple[Notice, ...]:
         """What is to say of a wall [mm]; `place` names it, as in "the sun: wall between bore and root circle"."""
         return self._below("thin-wall", wall, self.min_wall, place)
 
-    def hole_findings(self, diameter: float, thickness: float, place: str) -> tuple[Finding, ...]:
+    def hole_notices(self, diameter: float, thickness: float, place: str) -> tuple[Notice, ...]:
         """What is to say of a hole [mm] through a part of this thickness [mm]; `place` names it."""
         return self._below("small-hole", diameter, self.least_hole(thickness), place)
 
-    def tooth_findings(self, tooth: float, thickness: float, place: str) -> tuple[Finding, ...]:
+    def tooth_notices(self, tooth: float, thickness: float, place: str) -> tuple[Notice, ...]:
         """What is to say of a tooth this thick [mm] on a part of this thickness [mm]; `place` names it."""
         return self._below("thin-tooth", tooth, self.least_tooth(thickness), place)
 
-    def _below(self, code: str, number: float, limit: float, place: str) -> tuple[Finding, ...]:
+    def _below(self, code: str, number: float, limit: float, place: str) -> tuple[Notice, ...]:
         if number >= limit:
             return ()
         sentence = f"{place} is {number:.3g} mm; {self.name} needs at least {limit:.3g} mm"
-        return (Finding(code, sentence, number, limit),)
+        return (Notice(code, sentence, number, limit),)
 
 
 NUMBERS = tuple(f.name for f in fields(Process) if f.name != "name")

@@ -1,7 +1,7 @@
 """A body as a solid: walls on its boundaries and plane faces between them, without a Boolean on teeth."""
 
 import cadquery as cq
-from OCP.TopoDS import TopoDS_Solid
+from OCP.TopoDS import TopoDS, TopoDS_Solid
 
 from gearsolid.curves.fitted import fitted
 from gearsolid.curves.outline import Outline
@@ -42,7 +42,9 @@ def build_solid(body: Body, tol: float = 1e-4) -> TopoDS_Solid:
 
     def rims(outline: Outline) -> list[Wall]:
         if body.twists and is_toothed(outline):
-            return [twisted_wall(fitted(outline, tol, area_tol), body.z, body.levels)]
+            rim = fitted(outline, tol, area_tol)
+            courses = [twisted_wall(rim, body.z, levels) for levels in body.courses]
+            return [_grooved(courses, body.groove.floor(outline), body) if body.groove else courses[0]]
         return walls(outline, body.z, body.width)
 
     top = body.z + body.width
@@ -58,3 +60,17 @@ def build_solid(body: Body, tol: float = 1e-4) -> TopoDS_Solid:
         through = bore if boss is body.hub else []
         faces.append(plane_face(top + boss.height, [w.upper for w in (wall, *through)]))
     return join_faces(faces)
+
+
+def _grooved(courses: list[Wall], floor: Outline, body: Body) -> Wall:
+    """One wall from two courses of teeth and the relief groove between them."""
+    below, above = courses
+    (_, (low, _)), ((high, _), _) = body.courses
+    (relief,) = prism_walls(floor, body.z + low, high - low)
+    # The outer boundary comes first; in the groove of a ring that is its floor.
+    hand = 1 if floor.area > 0 else -1
+    ends = [
+        plane_face(body.z + low, [below.upper, TopoDS.Wire_s(relief.lower.Reversed())][::hand]),
+        plane_face(body.z + high, [above.lower, TopoDS.Wire_s(relief.upper.Reversed())][::hand], up=False),
+    ]
+    return Wall((*below.faces, *relief.faces, *ends, *above.faces), below.lower, above.upper)

@@ -27,6 +27,7 @@ from gearsolid.curves.outline import Outline, Piece
 from gearsolid.curves.primitives import Arc, Segment
 from gearsolid.curves.rotation import rotation
 from gearsolid.errors import SolidError
+from gearsolid.pairs.part import Level
 from gearsolid.solids.walls import Wall
 from gearsolid.solids.wires import knot_arrays, outline_wires
 
@@ -38,18 +39,16 @@ _ROTATION_TOL = 1e-8
 _ROUNDING_TOL = 1e-6
 # A cylinder face that turns further comes near its own period, where the kernel wraps it.
 _MOST_TURN = pi / 2
-_Level = tuple[float, float]
 _UNIT = Spline(1, (0.0, 0.0, 1.0, 1.0), (0.0, 1.0))
 
 
-def twisted_wall(outline: Outline, z: float, levels: Sequence[_Level]) -> Wall:
+def twisted_wall(outline: Outline, z: float, levels: Sequence[Level]) -> Wall:
     """Wall raised on a fitted rim, its section turning steadily between levels.
 
     Args:
         outline: rim round the axis, of arcs, segments and splines only.
-        z: lower level [mm].
-        levels: heights above the lower level [mm] and turns of the section there [rad], positive counter-clockwise
-            seen from above; the first are 0.
+        z: from where heights count [mm].
+        levels: heights above that [mm] and turns of the section there [rad], counter-clockwise seen from above.
 
     Raises:
         SolidError: the kernel refuses an edge.
@@ -58,7 +57,7 @@ def twisted_wall(outline: Outline, z: float, levels: Sequence[_Level]) -> Wall:
     rim = _ready(outline)
     levels = _close(levels)
     (base,) = outline_wires(rim, z)
-    rings = [base, *(_raised(base, h, t) for h, t in levels[1:])]
+    rings = [_raised(base, h, t) for h, t in levels]
     faces = [
         face
         for ((h0, t0), (h1, t1)), (lower, upper) in zip(pairwise(levels), pairwise(rings), strict=True)
@@ -67,7 +66,7 @@ def twisted_wall(outline: Outline, z: float, levels: Sequence[_Level]) -> Wall:
     return Wall(tuple(faces), rings[0], rings[-1])
 
 
-def _close(levels: Sequence[_Level]) -> list[_Level]:
+def _close(levels: Sequence[Level]) -> list[Level]:
     """The levels, with more put in where the section turns far between two."""
     found = [levels[0]]
     for (h0, t0), (h1, t1) in pairwise(levels):

@@ -22,7 +22,7 @@ from gearsolid.output.stl import write_stl
 from gearsolid.output.triangles import body_triangles
 from gearsolid.pairs.blank import DOUBLE_HELICAL, Blank
 from gearsolid.pairs.helix import member_body, twist_rate
-from gearsolid.pairs.part import Body, Boss
+from gearsolid.pairs.part import Body, Boss, Groove
 from gearsolid.pairs.planetary import PlanetaryStage
 from gearsolid.pairs.spur_pair import SpurPair
 from gearsolid.recipe.read import read_recipe
@@ -53,6 +53,10 @@ HELICAL = {
     "undercut pinion, 45 deg": member_body(InvoluteGear(7, 1, helix_angle_deg=45, profile_shift=0.1), Blank(8)),
     "chamfered tips": member_body(replace(RIGHT, tip=ChamferedTip(0.2)), Blank(20)),
     "rounded tips": member_body(replace(RIGHT, tip=RoundedTip(0.2)), Blank(20)),
+    "double with groove, chamfered bore, on a height": member_body(
+        RIGHT, Blank(24, Bore(14, chamfer=0.5), z=-3, course=DOUBLE_HELICAL, groove=Groove(4, 0.3))
+    ),
+    "double ring with groove": member_body(RING, Blank(16, course=DOUBLE_HELICAL, groove=Groove(3, 0.3))),
     "ring": member_body(RING, Blank(15)),
     "left-hand double ring": member_body(replace(RING, helix_angle_deg=-20), Blank(15, course=DOUBLE_HELICAL)),
     "more than a turn": Body(InvoluteGear(9, 1, helix_angle_deg=30).outline, 70, twists=(radians(400),)),
@@ -70,7 +74,12 @@ def test_body_is_one_valid_solid_of_area_times_width(made):
     body, solid = made
     assert len(solid.Solids()) == 1
     assert solid.isValid()
-    assert body.volume == replace(body, twists=()).volume
+    straight = replace(body, twists=(), groove=None).volume
+    if body.groove:
+        rim = RING if body.holes else RIGHT
+        floor = pi * (rim.root_radius + (0.3 if body.holes else -0.3)) ** 2
+        straight -= body.groove.width * abs(abs(rim.outline.area) - floor)
+    assert body.volume == pytest.approx(straight, rel=1e-12)
     assert exact_volume(solid) == pytest.approx(body.volume, rel=1e-6)
 
 
@@ -205,8 +214,9 @@ def overlap(machine, psi):
         (Blank(6), Blank(6)),
         (Blank(6), Blank(3, z=2.5)),
         (Blank(6, course=DOUBLE_HELICAL), Blank(4, z=1, course=DOUBLE_HELICAL)),
+        (Blank(6, course=DOUBLE_HELICAL), Blank(6, course=DOUBLE_HELICAL, groove=Groove(1, 0.2))),
     ],
-    ids=["on one level", "wheel set higher", "double, wheel narrower"],
+    ids=["on one level", "wheel set higher", "double, wheel narrower", "groove in the wheel only"],
 )
 def test_helical_mates_stay_clear_all_the_way_up(blanks):
     machine = pair(blanks=blanks)
@@ -267,6 +277,10 @@ def test_a_helical_planetary_stage_stands_clear():
             lambda: pair(blanks=(Blank(6, course=DOUBLE_HELICAL), Blank(4, course=DOUBLE_HELICAL))),
             "at a height of 3 mm and those of driven at 2 mm",
         ),
+        (lambda: Groove(0, 1), "groove is 0 mm wide"),
+        (lambda: Body(RIGHT.outline, 5, twists=(0.1, -0.1), groove=Groove(5, 1)), "below the face width, 5 mm"),
+        (lambda: Body(RIGHT.outline, 5, twists=(0.1,), groove=Groove(1, 1)), "with 1 helices"),
+        (lambda: Body(RIGHT.outline, 5, bore=Bore(36), twists=(0.1, -0.1), groove=Groove(1, 1)), "the body has 17.78"),
         (lambda: Body(disc(10), 5, twists=(0.1,)), "without a toothed rim"),
         (lambda: Body(RIGHT.outline, 5, twists=(float("nan"),)), "must be numbers"),
         (lambda: Body(RIGHT.outline, 5, holes=(holes(3, 17, 2.5),), twists=(0.1,)), "lies beside helical teeth"),
@@ -304,6 +318,10 @@ def test_a_recipe_gives_hands_and_courses(tmp_path):
     double = RECIPE.replace("face_width", "double_helical = true\nface_width").replace("= 16.0", "= 18.0")
     for part in read(tmp_path, double).parts:
         assert part.body.twists[0] == -part.body.twists[1] != 0
+    grooved = double.replace("double_helical = true", "double_helical = true\ngroove_width = 4")
+    for part, plain in zip(read(tmp_path, grooved).parts, read(tmp_path, double).parts, strict=True):
+        assert part.body.groove == Groove(4, 0.5)
+        assert part.body.twist_rate == pytest.approx(plain.body.twist_rate, rel=1e-12)
 
 
 @pytest.mark.parametrize(
@@ -311,6 +329,7 @@ def test_a_recipe_gives_hands_and_courses(tmp_path):
     [
         ("-20.0", "20.0", "pinion has a helix angle of 20 deg.*opposite hand: give wheel -20 deg"),
         ("-20.0", "-75", "driven.helix_angle = -75: must be a number not below -60 and not above 60"),
+        ("-20.0", "-20\ngroove_width = 3", "groove_width needs double_helical"),
         ("-20.0", "0\ndouble_helical = true", "double_helical needs a helix_angle"),
     ],
 )

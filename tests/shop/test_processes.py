@@ -2,13 +2,14 @@ import csv
 import tomllib
 from dataclasses import fields
 from importlib.resources import files
+from typing import get_args
 
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
 from gearsolid.errors import DesignError
-from gearsolid.shop.processes import NUMBERS, Process, process, process_names
+from gearsolid.shop.processes import NUMBERS, Process, ProcessName, process, process_names
 
 ROWS = list(csv.DictReader(files("gearsolid.shop").joinpath("data/processes.csv").open(encoding="ascii")))
 
@@ -89,7 +90,7 @@ def test_what_a_process_cannot_be_is_refused(name, changes, message):
     ],
 )
 def test_small_modules_are_found(name, module, code):
-    found = process(name).module_findings(module)
+    found = process(name).module_notices(module)
     assert [f.code for f in found] == ([code] if code else [])
     for f in found:
         assert f.number == module < f.limit
@@ -100,10 +101,10 @@ def test_small_modules_are_found(name, module, code):
 @pytest.mark.parametrize(
     ("found", "code", "number", "limit"),
     [
-        (process("FDM").wall_findings(0.9, "the wall"), "thin-wall", 0.9, 1.0),
-        (process("laser cutting").hole_findings(2.9, 3.0, "the hole"), "small-hole", 2.9, 3.0),
-        (process("waterjet cutting").hole_findings(1.5, 3.0, "the hole"), "small-hole", 1.5, 2.0),
-        (process("laser cutting").tooth_findings(1.4, 3.0, "the tooth"), "thin-tooth", 1.4, 1.5),
+        (process("FDM").wall_notices(0.9, "the wall"), "thin-wall", 0.9, 1.0),
+        (process("laser cutting").hole_notices(2.9, 3.0, "the hole"), "small-hole", 2.9, 3.0),
+        (process("waterjet cutting").hole_notices(1.5, 3.0, "the hole"), "small-hole", 1.5, 2.0),
+        (process("laser cutting").tooth_notices(1.4, 3.0, "the tooth"), "thin-tooth", 1.4, 1.5),
     ],
     ids=["wall", "hole by thickness", "hole", "tooth by thickness"],
 )
@@ -115,6 +116,10 @@ def test_what_is_too_thin_is_found_with_number_and_limit(found, code, number, li
 
 
 def test_what_is_thick_enough_is_not_found():
-    assert process("FDM").wall_findings(1.0, "the wall") == ()
-    assert process("laser cutting").hole_findings(3.0, 3.0, "the hole") == ()
-    assert process("laser cutting").tooth_findings(1.5, 3.0, "the tooth") == ()
+    assert process("FDM").wall_notices(1.0, "the wall") == ()
+    assert process("laser cutting").hole_notices(3.0, 3.0, "the hole") == ()
+    assert process("laser cutting").tooth_notices(1.5, 3.0, "the tooth") == ()
+
+
+def test_the_names_that_recipes_may_use_are_those_of_the_table():
+    assert get_args(ProcessName) == process_names()

@@ -4,7 +4,7 @@ from dataclasses import dataclass
 
 
 @dataclass(frozen=True)
-class Finding:
+class Notice:
     """A number beyond what common practice advises. What cannot exist is refused instead.
 
     Args:
