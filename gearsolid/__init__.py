@@ -10,9 +10,13 @@ if TYPE_CHECKING:
     from gearsolid.contact.result import Contact, RollResult, Verdict
     from gearsolid.contact.roll import roll_test
     from gearsolid.errors import DesignError, ExportError, GearsolidError, RecipeError, SolidError, ToleranceError
+    from gearsolid.output.dxf import write_arc_dxf, write_dxf
+    from gearsolid.output.flat import Flat, cutter_path, flat
     from gearsolid.output.folder import make_folder
     from gearsolid.output.step import write_step
     from gearsolid.output.stl import write_stl
+    from gearsolid.output.svg import write_svg
+    from gearsolid.output.threemf import write_machine_threemf, write_part_threemf
     from gearsolid.pairs.blank import Blank
     from gearsolid.pairs.part import Body, Boss, Part
     from gearsolid.pairs.planetary import PlanetaryStage
@@ -35,9 +39,13 @@ _HOMES = {
     "contact.result": ("Contact", "RollResult", "Verdict"),
     "contact.roll": ("roll_test",),
     "errors": ("DesignError", "ExportError", "GearsolidError", "RecipeError", "SolidError", "ToleranceError"),
+    "output.dxf": ("write_arc_dxf", "write_dxf"),
+    "output.flat": ("Flat", "cutter_path", "flat"),
     "output.folder": ("make_folder",),
     "output.step": ("write_step",),
     "output.stl": ("write_stl",),
+    "output.svg": ("write_svg",),
+    "output.threemf": ("write_machine_threemf", "write_part_threemf"),
     "pairs.blank": ("Blank",),
     "pairs.part": ("Body", "Boss", "Part"),
     "pairs.planetary": ("PlanetaryStage",),
@@ -67,6 +75,7 @@ __all__ = [
     "CycloidalGear",
     "DesignError",
     "ExportError",
+    "Flat",
     "GearsolidError",
     "InternalGear",
     "InvoluteGear",
@@ -87,14 +96,21 @@ __all__ = [
     "at_points",
     "body_solid",
     "cut_form",
+    "cutter_path",
+    "flat",
     "make_folder",
     "on_plane",
     "outline_face",
     "outline_wire",
     "read_recipe",
     "roll_test",
+    "write_arc_dxf",
+    "write_dxf",
+    "write_machine_threemf",
+    "write_part_threemf",
     "write_step",
     "write_stl",
+    "write_svg",
 ]
 
 

@@ -83,7 +83,7 @@ def make_folder(
         solids = {child.name: child.shapes[0] for child in whole.children}
         now(2)
         write_step(folder / WHOLE, whole)
-        write_machine_threemf(folder / WHOLE_FACETS, name, made, _FACET_TOL)
+        write_machine_threemf(folder / WHOLE_FACETS, machine.parts, name, _FACET_TOL)
         placed = "its parts placed at input angle 0"
         contents = {WHOLE: f"the machine, {placed}", WHOLE_FACETS: f"facets of the machine, {placed}"}
         records = []
@@ -114,7 +114,7 @@ def _check_names(made: Sequence[Made]) -> None:
 def _write_part(folder: Path, made: Made, solid: cq.Shape, circles: Sequence[float]) -> PartRecord:
     step = write_step(folder / f"{made.file_name}.step", cq.Assembly(solid, name=made.name))
     stl = write_stl(folder / f"{made.file_name}.stl", made.body, _FACET_TOL)
-    facets = write_part_threemf(folder / f"{made.file_name}.3mf", made, _FACET_TOL)
+    facets = write_part_threemf(folder / f"{made.file_name}.3mf", made.body, made.name, _FACET_TOL)
     section = flat(made.body, made.name, circles)
     curves = write_dxf(folder / f"{made.file_name}.dxf", section, _TOL)
     arcs = write_arc_dxf(folder / f"{made.file_name}.arcs.dxf", section, _ARC_TOL)

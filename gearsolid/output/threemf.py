@@ -17,11 +17,11 @@ import numpy as np
 from gearsolid import __version__
 from gearsolid.curves.curve import Reals
 from gearsolid.errors import DesignError, ExportError
-from gearsolid.output.made import Made
+from gearsolid.output.made import Made, distinct
 from gearsolid.output.stl import prove as prove_surface
 from gearsolid.output.triangles import Triangles, body_triangles
 from gearsolid.output.whole_file import whole_file
-from gearsolid.pairs.part import Part
+from gearsolid.pairs.part import Body, Part
 
 # Part names, types and namespaces of the 3MF Core specification 1.4.0 and the Open Packaging Conventions under it.
 _TYPES, _RELATIONS, _MODEL = "[Content_Types].xml", "_rels/.rels", "3D/3dmodel.model"
@@ -80,36 +80,38 @@ class ThreeMfFile:
     tol: float
 
 
-def write_part_threemf(path: Path, made: Made, tol: float = 0.01) -> ThreeMfFile:
+def write_part_threemf(path: Path, body: Body, name: str, tol: float = 0.01) -> ThreeMfFile:
     """Write one part; the file appears only when it has read back as the design.
 
     Args:
         path: file to make or to replace.
-        made: the part.
+        body: what is made; it stands where all its coordinates are positive.
+        name: of the part.
         tol: largest distance of a triangle's edge from the exact boundary [mm], absolute.
 
     Raises:
         DesignError: the tolerance is not above 0.
         ExportError: the file could not be written, or does not read back as the design.
     """
-    surface = body_triangles(made.body, tol)
-    items = [Placed(made.name, _shifted(_upright(), -surface.points.min(axis=0)))]
-    return _write(path, made.name, [made], [surface], items, "", tol)
+    surface = body_triangles(body, tol)
+    items = [Placed(name, _shifted(_upright(), -surface.points.min(axis=0)))]
+    return _write(path, name, [Made(name, body, ())], [surface], items, "", tol)
 
 
-def write_machine_threemf(path: Path, name: str, made: Sequence[Made], tol: float = 0.01) -> ThreeMfFile:
+def write_machine_threemf(path: Path, parts: Sequence[Part], name: str, tol: float = 0.01) -> ThreeMfFile:
     """Write the parts of a machine in their places at input angle 0; proved like a part.
 
     Args:
         path: file to make or to replace.
+        parts: of the machine; those of one shape become one object.
         name: of the machine.
-        made: its distinct parts.
         tol: largest distance of a triangle's edge from the exact boundary [mm], absolute.
 
     Raises:
         DesignError: the tolerance is not above 0, or two distinct parts have one name.
         ExportError: the file could not be written, or does not read back as the design.
     """
+    made = distinct(parts)
     names = [m.name for m in made]
     twice = sorted({n for n in names if names.count(n) > 1})
     if twice:

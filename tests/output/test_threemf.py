@@ -13,21 +13,19 @@ from shipped import MACHINES, PARTS
 
 from gearsolid.curves.loops import disc
 from gearsolid.errors import DesignError, ExportError
-from gearsolid.output.made import Made, distinct
+from gearsolid.output.made import distinct
 from gearsolid.output.threemf import read_threemf, write_machine_threemf, write_part_threemf
 from gearsolid.pairs.motion import Motion
 from gearsolid.pairs.part import Body, Part
 from gearsolid.shop.bore import Bore
 
 MODEL = "3D/3dmodel.model"
-ROD = Made("rod", Body(disc(3), 8), ())
+ROD = Body(disc(3), 8), "rod"
 BODY = Body(disc(9), 5, bore=Bore(6))
-TRAIN = distinct(
-    [
-        Part("wheel 1", replace(BODY, z=-2.0), Motion(10, 1.0, 0, 0.5), (1, 0, 0)),
-        Part("wheel 2", BODY, Motion(25, 4.0, 0, -2.0), (1, 0, 0)),
-        Part("pin & co", Body(disc(2), 30), Motion(), (0, 1, 0)),
-    ]
+TRAIN = (
+    Part("wheel 1", replace(BODY, z=-2.0), Motion(10, 1.0, 0, 0.5), (1, 0, 0)),
+    Part("wheel 2", BODY, Motion(25, 4.0, 0, -2.0), (1, 0, 0)),
+    Part("pin & co", Body(disc(2), 30), Motion(), (0, 1, 0)),
 )
 
 
@@ -50,7 +48,7 @@ def meshes(path):
 @pytest.mark.parametrize("name", PARTS)
 def test_every_shipped_part_is_a_watertight_solid(tmp_path, name):
     made = PARTS[name]
-    done = write_part_threemf(tmp_path / "part.3mf", made, 0.01)
+    done = write_part_threemf(tmp_path / "part.3mf", made.body, made.name, 0.01)
     ((found, judge),) = meshes(tmp_path / "part.3mf").items()
     assert found == made.name
     assert judge.is_watertight
@@ -66,7 +64,7 @@ def test_every_shipped_part_is_a_watertight_solid(tmp_path, name):
 @pytest.mark.parametrize("name", MACHINES)
 def test_every_shipped_machine_stands_in_its_place(tmp_path, name):
     machine = MACHINES[name]
-    done = write_machine_threemf(tmp_path / "all.3mf", name, distinct(machine.parts), 0.02)
+    done = write_machine_threemf(tmp_path / "all.3mf", machine.parts, name, 0.02)
     package = read_threemf(tmp_path / "all.3mf")
     assert Counter(p.name for p in package.placed) == {m.name: len(m.parts) for m in distinct(machine.parts)}
     judges = meshes(tmp_path / "all.3mf")
@@ -79,11 +77,10 @@ def test_every_shipped_machine_stands_in_its_place(tmp_path, name):
 
 
 def test_parts_stand_where_their_motion_says(tmp_path):
-    write_machine_threemf(tmp_path / "train.3mf", "train", TRAIN)
+    write_machine_threemf(tmp_path / "train.3mf", TRAIN, "train")
     placed = read_threemf(tmp_path / "train.3mf").placed
-    parts = [p for m in TRAIN for p in m.parts]
     origin = placed[2].transform[3]
-    for got, part in zip(placed, parts, strict=True):
+    for got, part in zip(placed, TRAIN, strict=True):
         place = got.transform[3] - origin
         assert complex(*place[:2]) == pytest.approx(part.motion.centre(0), abs=1e-9)
         assert place[2] == pytest.approx(part.body.z)
@@ -92,7 +89,7 @@ def test_parts_stand_where_their_motion_says(tmp_path):
 
 
 def test_the_package_is_as_the_specification_wants_it(tmp_path):
-    write_machine_threemf(tmp_path / "train.3mf", "a <train>", TRAIN)
+    write_machine_threemf(tmp_path / "train.3mf", TRAIN, "a <train>")
     with zipfile.ZipFile(tmp_path / "train.3mf") as package:
         assert package.namelist() == ["[Content_Types].xml", "_rels/.rels", MODEL]
         assert package.testzip() is None
@@ -113,7 +110,7 @@ def test_the_package_is_as_the_specification_wants_it(tmp_path):
 
 def test_equal_parts_give_equal_files(tmp_path):
     for name in ("a", "b"):
-        write_part_threemf(tmp_path / name, ROD)
+        write_part_threemf(tmp_path / name, *ROD)
     assert (tmp_path / "a").read_bytes() == (tmp_path / "b").read_bytes()
 
 
@@ -168,12 +165,12 @@ SPOILT = {
 @pytest.mark.parametrize(("spoil", "words"), SPOILT.items(), ids=SPOILT.values())
 def test_a_spoilt_model_never_appears(tmp_path, monkeypatch, spoil, words):
     target = tmp_path / "rod.3mf"
-    write_part_threemf(target, ROD)
+    write_part_threemf(target, *ROD)
     before, good = target.read_bytes(), text(target)
     assert spoil(good) != good
     monkeypatch.setattr("gearsolid.output.threemf._model", lambda *_: spoil(good))
     with pytest.raises(ExportError, match=words):
-        write_part_threemf(target, ROD)
+        write_part_threemf(target, *ROD)
     assert target.read_bytes() == before
     assert [p.name for p in tmp_path.iterdir()] == ["rod.3mf"]
 
@@ -189,7 +186,7 @@ def test_a_spoilt_model_never_appears(tmp_path, monkeypatch, spoil, words):
     ids=["type", "start", "target", "broken"],
 )
 def test_a_spoilt_package_is_refused(tmp_path, entry, old, new, words):
-    write_part_threemf(tmp_path / "good.3mf", ROD)
+    write_part_threemf(tmp_path / "good.3mf", *ROD)
     with zipfile.ZipFile(tmp_path / "good.3mf") as good, zipfile.ZipFile(tmp_path / "bad.3mf", "w") as bad:
         for name in good.namelist():
             content = good.read(name)
@@ -201,7 +198,7 @@ def test_a_spoilt_package_is_refused(tmp_path, entry, old, new, words):
 
 @pytest.mark.parametrize("share", [0.3, 0.95])
 def test_a_cut_off_file_is_refused(tmp_path, share):
-    write_part_threemf(tmp_path / "rod.3mf", ROD)
+    write_part_threemf(tmp_path / "rod.3mf", *ROD)
     content = (tmp_path / "rod.3mf").read_bytes()
     (tmp_path / "rod.3mf").write_bytes(content[: int(share * len(content))])
     with pytest.raises(ExportError, match="no whole 3MF file"):
@@ -209,10 +206,11 @@ def test_a_cut_off_file_is_refused(tmp_path, share):
 
 
 def test_two_parts_of_one_name_are_refused(tmp_path):
-    with pytest.raises(DesignError, match="called rod"):
-        write_machine_threemf(tmp_path / "two.3mf", "two", [ROD, replace(ROD, body=BODY)])
+    other = Part("wheel", Body(disc(2), 3), Motion(), (0, 1, 0))
+    with pytest.raises(DesignError, match="called wheel"):
+        write_machine_threemf(tmp_path / "two.3mf", (*TRAIN, other), "two")
 
 
 def test_a_tolerance_of_nothing_is_refused(tmp_path):
     with pytest.raises(DesignError, match="tolerance is 0 mm"):
-        write_part_threemf(tmp_path / "rod.3mf", ROD, 0)
+        write_part_threemf(tmp_path / "rod.3mf", *ROD, 0)
