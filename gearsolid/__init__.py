@@ -24,6 +24,12 @@ if TYPE_CHECKING:
     from gearsolid.pairs.spur_pair import SpurPair
     from gearsolid.recipe.read import Recipe, read_recipe
     from gearsolid.shop.bore import Bore
+    from gearsolid.shop.fits import hole_limits, shaft_limits
+    from gearsolid.shop.keys import key_for_bore
+    from gearsolid.shop.keys_inch import inch_key_for_bore
+    from gearsolid.shop.openings import Crossings, hole_circle
+    from gearsolid.shop.processes import process
+    from gearsolid.shop.profile_hole import d_hole, double_d_hole, hexagon_hole, square_hole
     from gearsolid.solids.assembly import assembly
     from gearsolid.solids.body import body_solid
     from gearsolid.solids.plugin import at_points, cut_form, on_plane, outline_face, outline_wire
@@ -53,6 +59,12 @@ _HOMES = {
     "pairs.spur_pair": ("SpurPair",),
     "recipe.read": ("Recipe", "read_recipe"),
     "shop.bore": ("Bore",),
+    "shop.fits": ("hole_limits", "shaft_limits"),
+    "shop.keys": ("key_for_bore",),
+    "shop.keys_inch": ("inch_key_for_bore",),
+    "shop.openings": ("Crossings", "hole_circle"),
+    "shop.processes": ("process",),
+    "shop.profile_hole": ("d_hole", "double_d_hole", "hexagon_hole", "square_hole"),
     "solids.assembly": ("assembly",),
     "solids.body": ("body_solid",),
     "solids.plugin": ("at_points", "cut_form", "on_plane", "outline_face", "outline_wire"),
@@ -71,6 +83,7 @@ __all__ = [
     "Bore",
     "Boss",
     "Contact",
+    "Crossings",
     "CycloidDisc",
     "CycloidalGear",
     "DesignError",
@@ -97,13 +110,23 @@ __all__ = [
     "body_solid",
     "cut_form",
     "cutter_path",
+    "d_hole",
+    "double_d_hole",
     "flat",
+    "hexagon_hole",
+    "hole_circle",
+    "hole_limits",
+    "inch_key_for_bore",
+    "key_for_bore",
     "make_folder",
     "on_plane",
     "outline_face",
     "outline_wire",
+    "process",
     "read_recipe",
     "roll_test",
+    "shaft_limits",
+    "square_hole",
     "write_arc_dxf",
     "write_dxf",
     "write_machine_threemf",

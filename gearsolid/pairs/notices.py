@@ -15,6 +15,8 @@ from gearsolid.shop.processes import Process
 # Least walls in modules: from a keyway's floor and from openings to the root circle.
 _OVER_KEYWAY = 2.5
 _RIM = 2.0
+# Least wall between a keyway's floor and the outside of the hub [mm].
+_HUB = 2.0
 
 
 @dataclass(frozen=True)
@@ -66,11 +68,25 @@ def part_notices(parts: Sequence[Part], module: float | None, process: Process |
         bodies.setdefault(replace(part.body, z=0.0), part.name)
     found = list(process.module_notices(module)) if process and module else []
     for body, name in bodies.items():
+        found += _at_keyway(body, name)
         if module:
             found += _by_module(body, name, module)
         if process:
             found += _by_process(body, name, process)
     return tuple(found)
+
+
+def _at_keyway(body: Body, name: str) -> Iterator[Notice]:
+    if not (isinstance(body.bore, Bore) and body.bore.key):
+        return
+    ends = [h.r_min for h in body.holes] + ([body.hub.outline.r_min] if body.hub else [])
+    over, least = min(ends, default=float("inf")) - body.bore.floor, max(body.bore.key.height / 2, _HUB)
+    if over < least:
+        sentence = (
+            f"{name}: the hub is {over:.3g} mm thick over the keyway's floor; {least:.3g} mm, half the key's height "
+            "and at least 2 mm, are advised in steel (common practice): take a larger hub"
+        )
+        yield Notice("thin-hub", sentence, over, least)
 
 
 def _by_module(body: Body, name: str, module: float) -> Iterator[Notice]:

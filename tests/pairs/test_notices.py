@@ -7,7 +7,7 @@ from gearsolid.pairs.blank import Blank, body_of
 from gearsolid.pairs.colours import BRASS
 from gearsolid.pairs.motion import Motion
 from gearsolid.pairs.notices import part_notices, walls
-from gearsolid.pairs.part import Body, Part
+from gearsolid.pairs.part import Body, Boss, Part
 from gearsolid.shop.bore import Bore
 from gearsolid.shop.openings import Crossings, hole_circle
 from gearsolid.shop.processes import process
@@ -55,6 +55,14 @@ def test_root_over_keyway(diameter, codes):
     over = 31.5 - Bore.keyed(diameter).floor
     assert (over < 5) == bool(codes), "2.5 modules"
     assert _codes(body, 2) == codes
+
+
+@pytest.mark.parametrize(("hub", "codes"), [(38.5, ["thin-hub"]), (38.7, [])])
+def test_hub_over_keyway(hub, codes):
+    """Bore 25, key 8 x 7, floor at 15.8 mm: half the key's height is 3.5 mm."""
+    crossed = Blank(20, Bore.keyed(25), openings=(Crossings(5, hub, 66, 6, 2).outline,))
+    assert _codes(body_of(WHEEL.outline, crossed)) == codes
+    assert _codes(Body(disc(50), 20, bore=Bore.keyed(25), bosses=(Boss(disc(hub / 2), 8),))) == codes
 
 
 def test_a_thin_rim_is_noted_with_number_and_limit():
