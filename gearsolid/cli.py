@@ -21,7 +21,7 @@ ROLLS, BINDS, BAD_INPUT, FAILED, INTERRUPTED = 0, 1, 2, 3, 130
 _EXITS = f"""\
 exit codes:
   {ROLLS}  it rolls (contact within the tolerance counts as rolling and is said)
-  {BINDS}  it binds, at the angle and place printed
+  {BINDS}  it binds, at the angle and place printed; of a study: the two ways disagree
   {BAD_INPUT}  the recipe, the design or the command line is wrong
   {FAILED}  a solid or a file could not be made
 """
@@ -78,6 +78,14 @@ def _parser() -> argparse.ArgumentParser:
     keys = commands.add_parser("keys", help="list what a recipe may say")
     keys.add_argument("machine", nargs="?", metavar="MACHINE", help="kind of machine; all kinds when left out")
     keys.set_defaults(run=_keys)
+
+    study = commands.add_parser("study", help="judge the roll test itself: random designs, checked by dense polygons")
+    study.add_argument("--designs", type=int, default=40, metavar="N", help="how many; 40 when left out, half a minute")
+    study.add_argument(
+        "--first", type=int, default=0, metavar="K", help="number of the first design, to share the work"
+    )
+    study.add_argument("--seed", type=int, default=0, metavar="S", help="another seed gives other designs")
+    study.set_defaults(run=_study)
     return parser
 
 
@@ -88,13 +96,14 @@ def _code(result: "RollResult") -> int:
 
 
 def _roll(chosen: argparse.Namespace) -> int:
+    from gearsolid.contact.causes import causes
     from gearsolid.contact.roll import roll_test
     from gearsolid.output.text import roll_text
     from gearsolid.recipe import read_recipe
 
     recipe = read_recipe(chosen.recipe)
     result = roll_test(recipe.machine)
-    print(roll_text(recipe.name, recipe.machine, result))
+    print(roll_text(recipe.name, recipe.machine, result, causes(recipe.machine, result)))
     _print_notices(recipe)
     return _code(result)
 
@@ -127,3 +136,16 @@ def _keys(chosen: argparse.Namespace) -> int:
 
     print(keys_text(chosen.machine))
     return ROLLS
+
+
+def _study(chosen: argparse.Namespace) -> int:
+    from gearsolid.contact.study import study
+
+    if min(chosen.designs, chosen.first + 1, chosen.seed + 1) < 1:
+        raise DesignError(
+            f"the study is asked for {chosen.designs} designs from number {chosen.first} with seed {chosen.seed}; it "
+            "needs at least 1 design, and number and seed from 0"
+        )
+    done = study(range(chosen.first, chosen.first + chosen.designs), chosen.seed)
+    print(done.text)
+    return ROLLS if done.passed else BINDS

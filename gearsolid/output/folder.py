@@ -6,6 +6,7 @@ from pathlib import Path
 import cadquery as cq
 
 from gearsolid import __version__
+from gearsolid.contact.causes import causes
 from gearsolid.contact.result import RollResult
 from gearsolid.contact.roll import roll_test
 from gearsolid.errors import DesignError
@@ -94,7 +95,14 @@ def make_folder(
         now(len(steps) - 1)
         files = [_file(folder, file, content) for file, content in contents.items()]
         report = make_report(
-            version=__version__, name=name, machine=machine, result=result, parts=records, recipe=recipe, files=files
+            version=__version__,
+            name=name,
+            machine=machine,
+            result=result,
+            found=causes(machine, result),
+            parts=records,
+            recipe=recipe,
+            files=files,
         )
         (folder / PAGE).write_text(page(report, machine, result, made), encoding="utf-8")
         files.append(_file(folder, PAGE, "this report as a page"))

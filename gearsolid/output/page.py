@@ -12,7 +12,7 @@ import numpy as np
 from gearsolid.contact.result import Contact, RollResult, Verdict
 from gearsolid.output.made import Made
 from gearsolid.output.plot import line_plot
-from gearsolid.output.report import FileRecord, PartRecord, Report, tightest_first
+from gearsolid.output.report import FileRecord, FindingRecord, PartRecord, Report, tightest_first
 from gearsolid.output.views import close_view, machine_view, part_view, shapes, windows
 from gearsolid.output.wording import VERDICTS, angle_text, finding, number, ratio_text
 from gearsolid.pairs.machine import Machine
@@ -43,6 +43,7 @@ def page(report: Report, machine: Machine, result: RollResult, made: Sequence[Ma
         verdict=report.verdict.value,
         verdict_word=VERDICTS[report.verdict],
         sentence=escape(finding(worst)),
+        findings=_findings(report.findings),
         figures=_figures(report, machine),
         shapes=shapes(made),
         machine_view=machine_view(machine, made, worst),
@@ -68,6 +69,26 @@ def _resource(name: str) -> str:
 def _ring_sentence(contact: Contact) -> str:
     what = "overlap deepest" if contact.verdict is Verdict.BINDS else "come closest"
     return f"The ring marks where {escape(contact.name_a)} and {escape(contact.name_b)} {what}."
+
+
+def _findings(found: Sequence[FindingRecord]) -> str:
+    """Named causes as a list; nothing where there are none."""
+    if not found:
+        return ""
+    items = "\n".join(
+        f'<li class="{"binds" if f.binds else "reported"}"><b>{f.cause.value}</b>, {escape(_alike_pairs(f))}: '
+        f"{escape(f.sentence)}.<br>To do: {escape(f.remedy)}.</li>"
+        for f in found
+    )
+    return (
+        '<section aria-labelledby="h-findings">\n<h2 id="h-findings">Findings</h2>\n'
+        f'<ul class="findings">\n{items}\n</ul>\n</section>'
+    )
+
+
+def _alike_pairs(found: FindingRecord) -> str:
+    first = " with ".join(found.pairs[0])
+    return first if len(found.pairs) == 1 else f"{first} and {len(found.pairs) - 1} pairs alike"
 
 
 def _figures(report: Report, machine: Machine) -> str:

@@ -6,6 +6,7 @@ from typing import Literal
 import numpy as np
 from pydantic import BaseModel, ConfigDict, Field
 
+from gearsolid.contact.finding import Cause, Finding
 from gearsolid.contact.result import Contact, RollResult, Verdict
 from gearsolid.curves.curve import Reals
 from gearsolid.pairs.machine import Machine
@@ -51,6 +52,19 @@ class ContactRecord(_Record):
     curves: Curves = Field(description="the same through one pitch")
 
 
+class FindingRecord(_Record):
+    """A named cause: why parts bind, or what is worth knowing."""
+
+    cause: Cause = Field(description="its name")
+    pairs: tuple[tuple[str, str], ...] = Field(description="names of the parts, one entry for every pair alike")
+    binds: bool = Field(description="whether it makes the parts bind; else it is only reported")
+    sentence: str = Field(description="what is the matter, with numbers")
+    size: float = Field(description="how large it is [mm]")
+    place: Place = Field(description="where, for the first pair")
+    input_angle: float = Field(description="input angle at which it is there [deg]")
+    remedy: str = Field(description="what to change, with numbers")
+
+
 class FileRecord(_Record):
     """A file of the folder."""
 
@@ -94,6 +108,7 @@ class Report(_Record):
     sentence: str = Field(description="the verdict in one line")
     tolerance: float = Field(description="clearance below which a contact touches [mm]")
     contacts: tuple[ContactRecord, ...] = Field(description="every pair that can touch, the tightest first")
+    findings: tuple[FindingRecord, ...] = Field(description="named causes, those that make parts bind first")
     parts: tuple[PartRecord, ...] = Field(description="every distinct part")
     recipe: dict[str, dict[str, str]] = Field(description="the recipe with its defaults filled in, table by table")
     files: tuple[FileRecord, ...] = Field(description="every file of the folder except report.json itself")
@@ -123,6 +138,20 @@ def contact_record(contact: Contact) -> ContactRecord:
     )
 
 
+def finding_record(found: Finding) -> FindingRecord:
+    """The record of one named cause."""
+    return FindingRecord(
+        cause=found.cause,
+        pairs=found.pairs,
+        binds=found.binds,
+        sentence=found.sentence,
+        size=found.size,
+        place=Place(x=found.place.real, y=found.place.imag),
+        input_angle=found.input_angle,
+        remedy=found.remedy,
+    )
+
+
 def tightest_first(result: RollResult) -> list[Contact]:
     """The contacts by growing clearance."""
     return sorted(result.contacts, key=lambda c: c.clearance)
@@ -134,6 +163,7 @@ def make_report(
     name: str,
     machine: Machine,
     result: RollResult,
+    found: Sequence[Finding],
     parts: Sequence[PartRecord],
     recipe: Mapping[str, Mapping[str, str]],
     files: Sequence[FileRecord],
@@ -145,6 +175,7 @@ def make_report(
         name: of the recipe.
         machine: the machine.
         result: its roll test.
+        found: the named causes.
         parts: the distinct parts as made.
         recipe: table -> key -> value as text with its unit.
         files: the files of the folder.
@@ -162,6 +193,7 @@ def make_report(
         sentence=result.sentence,
         tolerance=result.tolerance,
         contacts=tuple(contact_record(c) for c in tightest_first(result)),
+        findings=tuple(finding_record(f) for f in found),
         parts=tuple(parts),
         recipe={table: dict(rows) for table, rows in recipe.items()},
         files=tuple(files),

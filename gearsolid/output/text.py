@@ -1,10 +1,12 @@
 """The roll test as lines for a terminal."""
 
+from collections.abc import Sequence
 from textwrap import fill
 
+from gearsolid.contact.finding import Finding
 from gearsolid.contact.result import Contact, RollResult, Verdict
 from gearsolid.output.report import tightest_first
-from gearsolid.output.wording import VERDICTS, finding, number, ratio_text
+from gearsolid.output.wording import VERDICTS, cause_text, finding, number, ratio_text
 from gearsolid.pairs.machine import Machine
 
 _HEADS = (
@@ -15,13 +17,14 @@ _HEADS = (
 _WORDS = 2
 
 
-def roll_text(name: str, machine: Machine, result: RollResult) -> str:
-    """Verdict, machine and every contact, the tightest first.
+def roll_text(name: str, machine: Machine, result: RollResult, found: Sequence[Finding]) -> str:
+    """Verdict, machine, every contact, the tightest first, and the named causes.
 
     Args:
         name: of the recipe.
         machine: the machine.
         result: its roll test.
+        found: the named causes.
 
     Returns:
         Lines without a final line end.
@@ -42,8 +45,13 @@ def roll_text(name: str, machine: Machine, result: RollResult) -> str:
             f"centre distance  {machine.centre_distance:.4f} mm",
             "",
             *_table([*_HEADS, *(_row(c) for c in tightest_first(result))]),
+            *(line for f in found for line in ("", _cause(f))),
         ]
     )
+
+
+def _cause(f: Finding) -> str:
+    return fill(f"{f.cause.value}{'' if f.binds else ' (reported)'}: {cause_text(f)}", 100, subsequent_indent="  ")
 
 
 def _row(c: Contact) -> tuple[str, ...]:

@@ -1,5 +1,6 @@
 """The sentences in which every output says what the roll test found."""
 
+from gearsolid.contact.finding import Finding
 from gearsolid.contact.result import Contact, Verdict
 
 VERDICTS = {
@@ -36,3 +37,9 @@ def ratio_text(ratio: float) -> str:
 def angle_text(angle: float) -> str:
     """An angle from 0 to below 360 degrees."""
     return f"{round(angle, 3) % 360:.3f}°"
+
+
+def cause_text(found: Finding) -> str:
+    """A named cause in two sentences: what is the matter, and what to change."""
+    more = f" (and {len(found.pairs) - 1} pairs alike)" if len(found.pairs) > 1 else ""
+    return f"{found.sentence}{more}. To do: {found.remedy}."

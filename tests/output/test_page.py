@@ -6,6 +6,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from gearsolid.contact.causes import causes
 from gearsolid.contact.result import RollResult, Verdict
 from gearsolid.contact.roll import roll_test
 from gearsolid.output.made import distinct
@@ -32,7 +33,7 @@ def rolled(pair):
     return roll_test(pair)
 
 
-def html(pair, rolled, name="Two wheels"):
+def html(pair, rolled, name="Two wheels", found=()):
     made = distinct(pair.parts)
     parts = [
         PartRecord(
@@ -54,7 +55,9 @@ def html(pair, rolled, name="Two wheels"):
         for m in made
     ]
     recipe = {"machine": {"name": name}}
-    report = make_report(version="0", name=name, machine=pair, result=rolled, parts=parts, recipe=recipe, files=())
+    report = make_report(
+        version="0", name=name, machine=pair, result=rolled, found=found, parts=parts, recipe=recipe, files=()
+    )
     return page(report, pair, rolled, made)
 
 
@@ -151,6 +154,26 @@ def test_the_finding_names_depth_angle_and_place(rolled):
 def test_the_text_lists_the_tightest_first(pair, rolled):
     nothing = dict.fromkeys(("play", "play_angle", "contact_ratio", "transmission_error"))
     loose = replace(rolled.worst, name_b="far", clearance=2.0, **nothing)
-    text = roll_text("Two wheels", pair, RollResult((loose, rolled.worst), 1e-5))
+    text = roll_text("Two wheels", pair, RollResult((loose, rolled.worst), 1e-5), ())
     assert text.index("left with right") < text.index("left with far")
     assert text.endswith("2.0000"), "figures without a meaning are left out"
+
+
+def too_near(pair):
+    machine = replace(pair, centre_distance=24.7, driver_name="<left>")
+    return machine, roll_test(machine)
+
+
+def test_findings_are_listed_with_their_remedy_and_cannot_break_the_page(pair, rolled):
+    (found,) = causes(*too_near(pair))
+    text = html(pair, rolled, found=(found,))
+    assert '<li class="binds"><b>negative play</b>, &lt;left&gt; with right: ' in text
+    assert f"To do: {found.remedy}." in text
+    assert "Findings" not in html(pair, rolled)
+
+
+def test_findings_stand_below_the_table_of_a_terminal(pair):
+    machine, result = too_near(pair)
+    text = roll_text("Two wheels", machine, result, causes(machine, result))
+    assert "negative play: the teeth are too thick" in text
+    assert all(len(line) <= 100 for line in text.splitlines())

@@ -208,7 +208,6 @@ def test_exact_clock_pairs_run_true_either_way(teeth, leaves, drives):
     assert c.play == pytest.approx(0.1 * pi, abs=1e-6)
 
 
-@pytest.mark.xfail(strict=True, reason="contact near the pitch point, a cusp of both flanks, is counted wrongly")
 @pytest.mark.parametrize("name", ["20/30", "15/60", "8/64 radial", "12 in 60"])
 def test_counted_contact_ratio_is_that_of_the_formula(name):
     driver, driven = EXACT[name]
