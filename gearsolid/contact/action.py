@@ -97,13 +97,13 @@ def path_of_contact(e: Engagement) -> PathOfContact:
         DesignError: the parts bind, nothing stops b, the ratio wavers (the law of gearing is not met), or the two turn
             alike (a pin in a hole has no pitch point).
     """
+    forward = _forward(e)
     d = drive(e)
     if not d.steady:
         raise DesignError(
             f"the angle of {e.name_b} wavers by {np.degrees(np.ptp(d.turn)):.4g} deg while {e.name_a} drives it: there "
             "is no one line of action; take exact flanks or see the transmission error"
         )
-    forward = _forward(e)
     psi, place = conjugate_places(e, d.sweep, d.turn, d.way)
     arm = place - _pitch_point(e)
     order = np.argsort(np.real(arm * np.conj(forward)), kind="stable")
@@ -131,8 +131,8 @@ def early_contact(e: Engagement) -> float:
     Raises:
         DesignError: the parts bind, nothing stops b, or the two turn alike.
     """
-    d = drive(e)
     pitch_point, forward = _pitch_point(e), _forward(e)
+    d = drive(e)
     find = conjugate_places if d.steady else touching_places
     _, place = find(e, d.sweep, d.turn, d.way)
     before = np.real((pitch_point - place) * np.conj(forward))
