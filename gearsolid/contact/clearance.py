@@ -16,8 +16,8 @@ POSES = 32
 # the square of the sample spacing, which is about 1/160 of a pitch.
 _SLACK = 2e-4
 
-# Lowest samples of a pose and view that are refined to the exact distance.
-_REFINED = 4
+# Most samples of a pose and view that are refined to the exact distance: every pin of a ring may be as near.
+_REFINED = 24
 
 # Lowest spots followed between the sampled poses.
 _FOLLOWED = 6
@@ -95,8 +95,11 @@ def lowest_rows(t: Touching, poses: int, pitch_length: float) -> Integers:
     key = t.pose.astype(np.int64) << 40 | t.pitch.astype(np.int64) << 20 | t.sample
     before = np.where(np.append(False, np.diff(key) == 1), np.roll(t.distance, 1), np.inf)
     after = np.where(np.append(np.diff(key) == 1, False), np.roll(t.distance, -1), np.inf)
-    slack = _SLACK * pitch_length
-    rows = np.flatnonzero((t.distance <= before) & (t.distance <= after) & (t.distance <= least[t.pose] + slack))
+    # Where two pieces join the boundary has two samples in one place; rounding must not decide between them.
+    slack, same = _SLACK * pitch_length, 1e-9 * pitch_length
+    rows = np.flatnonzero(
+        (t.distance <= before + same) & (t.distance <= after + same) & (t.distance <= least[t.pose] + slack)
+    )
     rows = rows[np.lexsort((t.distance[rows], t.pose[rows]))]
     pose = t.pose[rows]
     rank = np.arange(rows.size) - np.searchsorted(pose, pose)

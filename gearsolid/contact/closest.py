@@ -17,6 +17,9 @@ _NARROWINGS = 2
 _SLIDES = 6
 _STILL = 1e-5
 
+# Longest Newton step, in samples.
+_STRIDE = 3.0
+
 # Step for the second derivative of the distance along the probe, in samples.
 _PROBE = 1e-4
 
@@ -136,7 +139,7 @@ def slide_to_ridge(view: View, spots: Spots) -> tuple[Spots, Measure]:
 
 
 def newton(view: View, spots: Spots) -> tuple[Spots, Measure, Reals]:
-    """One Newton step of each spot towards its least distance, within its limits and by one sample at most.
+    """One Newton step of each spot towards its least distance, within its limits and by a few samples at most.
 
     Returns:
         The moved spots, the measure before the step, and the fall of the distance the step should bring [mm].
@@ -149,7 +152,7 @@ def newton(view: View, spots: Spots) -> tuple[Spots, Measure, Reals]:
     bend = (there - here) / ahead
     curved = bend > 0
     step = np.where(curved, -here / np.where(curved, bend, 1.0), -np.sign(here))
-    place = np.clip(spots.place + np.clip(step, -1.0, 1.0), spots.low, spots.high)
+    place = np.clip(spots.place + np.clip(step, -_STRIDE, _STRIDE), spots.low, spots.high)
     moved = place - spots.place
     fall = -(here + bend * moved / 2) * moved
     return replace(spots, place=place), both.first(n), fall

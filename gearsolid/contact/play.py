@@ -18,12 +18,15 @@ _LEVER = 0.02
 _STRONG_LEVER = 0.5
 
 _ROUNDS = 40
-_PATIENCE = 4
+_PATIENCE = 8
+
+# How far a contact may wander along the probe in one step, in samples.
+_FREEDOM = 6
 
 # Longest Newton step, in pitches of b.
 _STRIDE = 0.1
 
-_WITNESSES = 3
+_WITNESSES = 24
 _CHECKS = 4
 _SETTLED = 1e-11
 
@@ -59,27 +62,29 @@ def window(s: Sweep, radius: float, least: float) -> Window:
     """
     lever = radius * (_LEVER if least >= 0 else _STRONG_LEVER)
     poses = s.psi.size
-    free = _freedom(s, np.tile(s.psi, 2), np.repeat([-1.0, 1.0], poses), lever)
+    # Parts that are clear as they stand are stopped at no turn against the way asked for.
+    floor = -_SAME if least >= 0 else -np.inf
+    free = _freedom(s, np.tile(s.psi, 2), np.repeat([-1.0, 1.0], poses), lever, floor)
     return Window(-free[:poses], free[poses:])
 
 
-def _freedom(s: Sweep, psi: Reals, way: Reals, lever: float) -> Reals:
+def _freedom(s: Sweep, psi: Reals, way: Reals, lever: float, floor: float) -> Reals:
     """Turn of b until it is stopped [rad], at each input angle in the way asked for.
 
     The stop found from the nearest samples is checked by a new sweep with b turned there; a stop met earlier takes its
     place.
     """
     still = np.zeros_like(psi)
-    free = _stop(tuple((v, t.repeated(s.psi.size)) for v, t in s.seen), psi, still, way, lever)
+    free = _stop(tuple((v, t.repeated(s.psi.size)) for v, t in s.seen), psi, still, way, lever, floor)
     slack = 0.02 * s.pitch_length
     while np.isnan(free).any() and slack < s.pitch_length:
         seen = tuple((v, v.sweep(psi, still, s.margin, slack)) for v, _ in s.seen)
-        free = _stop(seen, psi, still, way, lever)
+        free = _stop(seen, psi, still, way, lever, floor)
         slack *= 4
     for _ in range(_CHECKS):
         extra = way * np.nan_to_num(free)
         seen = tuple((v, v.sweep(psi, extra, s.margin, 0.0)) for v, _ in s.seen)
-        earlier = np.fmin(free, _stop(seen, psi, extra, way, lever))
+        earlier = np.fmin(free, _stop(seen, psi, extra, way, lever, floor))
         settled = not np.any(earlier < free - _SAME)
         free = earlier
         if settled:
@@ -87,7 +92,9 @@ def _freedom(s: Sweep, psi: Reals, way: Reals, lever: float) -> Reals:
     return free
 
 
-def _stop(seen: tuple[tuple[View, Touching], ...], psi: Reals, extra: Reals, way: Reals, lever: float) -> Reals:
+def _stop(
+    seen: tuple[tuple[View, Touching], ...], psi: Reals, extra: Reals, way: Reals, lever: float, floor: float
+) -> Reals:
     free = np.full(psi.size, np.nan)
     for view, touching in seen:
         closing = -way[touching.pose] * touching.closing
@@ -95,7 +102,8 @@ def _stop(seen: tuple[tuple[View, Touching], ...], psi: Reals, extra: Reals, way
         rows = _leaders(touching, rows, touching.distance[rows] / closing[rows])
         if rows.size:
             pose = touching.pose[rows]
-            turn, stopped = _stopped(view, spots_at(view, touching, rows, psi, extra, 2), way[pose], lever)
+            turn, stopped = _stopped(view, spots_at(view, touching, rows, psi, extra, _FREEDOM), way[pose], lever)
+            stopped &= turn >= floor
             np.fmin.at(free, pose[stopped], turn[stopped])
     return free
 
@@ -114,7 +122,8 @@ def _stopped(view: View, spots: Spots, way: Reals, lever: float) -> tuple[Reals,
         spots, exact, fall = newton(view, spots)
         gap, u = exact.near.distance, turn[at]
         arm = np.maximum(-way[at] * exact.closing, lever)
-        free[at] = np.where(gap > 0, np.maximum(free[at], u), free[at])
+        # A gap still falling along the probe shows nothing; an overlap anywhere does.
+        free[at] = np.where(gap - fall > 0, np.maximum(free[at], u), free[at])
         blocked[at] = np.where(gap < 0, np.minimum(blocked[at], u), blocked[at])
         between = blocked[at] - free[at]
         stopped[at] = (np.abs(gap) + np.abs(fall) <= _SETTLED * arm) | (np.abs(between) <= _SETTLED)
@@ -131,7 +140,7 @@ def _stopped(view: View, spots: Spots, way: Reals, lever: float) -> tuple[Reals,
         if at.size == 0:
             break
         turn[at] = step
-        spots = around(view, replace(spots.take(going), extra=way[at] * step), 2)
+        spots = around(view, replace(spots.take(going), extra=way[at] * step), _FREEDOM)
     # A spot that has wandered beyond the next tooth says nothing about the first stop.
     return turn, stopped & (np.abs(turn - start) < pitch)
 
@@ -142,7 +151,8 @@ def _leaders(touching: Touching, rows: Integers, turn: Reals) -> Integers:
     joined = np.diff(key) == 1
     before = np.where(np.append(False, joined), np.roll(turn, 1), np.inf)
     after = np.where(np.append(joined, False), np.roll(turn, -1), np.inf)
-    keep = np.flatnonzero((turn <= before) & (turn <= after))
+    # Where two pieces join the boundary has two samples in one place; rounding must not decide between them.
+    keep = np.flatnonzero((turn <= before + _SAME) & (turn <= after + _SAME))
     keep = keep[np.lexsort((turn[keep], touching.pose[rows[keep]]))]
     pose = touching.pose[rows[keep]]
     rank = np.arange(keep.size) - np.searchsorted(pose, pose)

@@ -19,10 +19,15 @@ Integers = NDArray[np.int64]
 
 # Largest error of the quintic stand-in, relative to the outline's size: far below any gap that is asked about.
 _STAND_IN = 2e-9
+# Largest error of a distance read off the osculating circle of the nearest sample, as a share of the pitch length.
+_ROUGH = 5e-5
 _SAMPLES_PER_PITCH = 96
 _MOST_SAMPLES_PER_PITCH = 5000
 _FEWEST_PER_SPAN = 9
 _NEWTON_STEPS = 4
+
+# How often the sample spacing is halved towards a corner.
+_HALVINGS = 6
 
 
 @dataclass(frozen=True)
@@ -39,6 +44,7 @@ class Cloud:
         quintic: coefficients to the next sample in powers 0 to 5 of the fraction travelled, shape (6, n).
         corner: whether the direction of travel jumps at the sample, shape (n,).
         error: largest distance of the quintics from the exact curve, measured half way between samples [mm].
+        rough_error: largest distance of the osculating circles from the exact curve there [mm].
     """
 
     piece: Integers
@@ -50,6 +56,7 @@ class Cloud:
     quintic: Points
     corner: NDArray[np.bool_]
     error: float
+    rough_error: float
 
 
 @dataclass(frozen=True)
@@ -83,9 +90,10 @@ class Field:
             ToleranceError: the outline is too rugged for the stand-in.
         """
         size, count = self.outline.r_max, _SAMPLES_PER_PITCH
+        pitch = self.outline.pitch_angle * size
         while True:
             cloud = _sampled(self.outline, count)
-            if cloud.error <= _STAND_IN * size:
+            if cloud.error <= _STAND_IN * size and cloud.rough_error <= _ROUGH * pitch:
                 return cloud
             count *= 2
             if count > _MOST_SAMPLES_PER_PITCH:
@@ -222,7 +230,7 @@ class Field:
         run = np.abs(cloud.point[np.clip(index + side, 0, stop)] - cloud.point[index])
         share = np.minimum(np.abs(along) / np.where(run > 0, run, 1.0), 1.0)
         start = np.minimum(index, stop - 1)
-        still = np.abs(self._along(start, (index - start) * 1.0)[1]) < 1e-6 * run
+        still = np.abs(self._along(start, (index - start).astype(np.float64))[1]) < 1e-6 * run
         return side * np.where(still, np.sqrt(share), share)
 
     def _hand(self, start: Integers, fraction: Reals, slope: Points) -> Points:
@@ -237,8 +245,11 @@ def _sampled(outline: Outline, per_pitch: int) -> Cloud:
     spans = [(k, s) for k, p in enumerate(outline.pieces) for s in smooth_spans(p.curve)]
     lengths = np.array([_chord_length(outline, k, s) for k, s in spans])
     counts = np.maximum(_FEWEST_PER_SPAN, np.ceil(per_pitch * lengths / lengths.sum()).astype(int) + 1)
-    columns = [_sampled_span(outline, k, s, n) for (k, s), n in zip(spans, counts, strict=True)]
-    piece, point, tangent, curvature, edge, quintic, error = (
+    sharp = _sharp_ends(outline, spans)
+    columns = [
+        _sampled_span(outline, k, _graded(s, n, ends)) for (k, s), n, ends in zip(spans, counts, sharp, strict=True)
+    ]
+    piece, point, tangent, curvature, edge, quintic, error, rough = (
         np.concatenate([c[i] for c in columns], axis=-1) for i in range(len(columns[0]))
     )
     hand = tangent.copy()
@@ -251,23 +262,43 @@ def _sampled(outline: Outline, per_pitch: int) -> Cloud:
     corner = np.abs(hand) < (2 - 1e-9) * (edge != 0)
     # Where two spans form a cusp their tangents cancel; either one then decides the side.
     hand = np.where(np.abs(hand) < 1e-6, tangent, hand)
-    return Cloud(piece, point, tangent, curvature, hand, edge, quintic, corner, float(error.max()))
+    return Cloud(piece, point, tangent, curvature, hand, edge, quintic, corner, float(error.max()), float(rough.max()))
 
 
-def _sampled_span(outline: Outline, piece: int, span: tuple[float, float], count: int) -> tuple[np.ndarray, ...]:
-    curve = outline.pieces[piece].curve
+def _sharp_ends(outline: Outline, spans: list[tuple[int, tuple[float, float]]]) -> list[tuple[bool, bool]]:
+    """Whether each span starts and whether it ends in a corner."""
+    ends = np.array([outline.pieces[k].curve.tangent(np.array(s)) for k, s in spans])
+    step = outline.step if outline.is_chain else 1.0
+    before = np.append(ends[-1:, 1] / step, ends[:-1, 1])
+    start = np.abs(ends[:, 0] - before) > 1e-6
+    return list(zip(start.tolist(), np.roll(start, -1).tolist(), strict=True))
+
+
+def _graded(span: tuple[float, float], count: int, sharp: tuple[bool, bool]) -> Reals:
+    """Parameters spread evenly, and drawn together towards corners.
+
+    Beside a corner the nearest sample would else often lie on the wrong one of the two stretches that meet there.
+    """
     t0, t1 = span
-    t = np.linspace(t0, t1, count)
-    step = (t1 - t0) / (count - 1)
-    inside = np.clip(t, t0 + 1e-9 * (t1 - t0), t1 - 1e-9 * (t1 - t0))
-    point, slope, tangent = curve.point(t), curve.derivative(inside) * step, curve.tangent(inside)
+    towards = (t1 - t0) / (count - 1) * 0.5 ** np.arange(1, 1 + _HALVINGS)
+    none = np.empty(0)
+    extra = [t0 + towards if sharp[0] else none, t1 - towards if sharp[1] else none]
+    return np.unique(np.concatenate([np.linspace(t0, t1, count), *extra]))
+
+
+def _sampled_span(outline: Outline, piece: int, t: Reals) -> tuple[np.ndarray, ...]:
+    curve = outline.pieces[piece].curve
+    step, reach = np.diff(t), 1e-9 * (t[-1] - t[0])
+    inside = np.clip(t, t[0] + reach, t[-1] - reach)
+    point, slope, tangent = curve.point(t), curve.derivative(inside), curve.tangent(inside)
     chord = np.diff(point)
     gaps = np.abs(chord)
     limit = 0.5 / np.maximum(np.append(gaps, gaps[-1]), np.append(gaps[0], gaps))
     curvature = np.clip(curve.curvature(inside), -limit, limit)
-    quintic = np.zeros((6, count), dtype=complex)
-    bend = curve.second(inside) * step**2
-    (m0, m1), (a0, a1) = (slope[:-1], slope[1:]), (bend[:-1], bend[1:])
+    quintic = np.zeros((6, t.size), dtype=complex)
+    bend = curve.second(inside)
+    m0, m1 = slope[:-1] * step, slope[1:] * step
+    a0, a1 = bend[:-1] * step**2, bend[1:] * step**2
     quintic[0] = point
     quintic[1, :-1] = m0
     quintic[2, :-1] = a0 / 2
@@ -277,9 +308,11 @@ def _sampled_span(outline: Outline, piece: int, span: tuple[float, float], count
     middle = 0.5 ** np.arange(6) @ quintic[:, :-1]
     exact, direction = curve.point(t[:-1] + step / 2), curve.tangent(t[:-1] + step / 2)
     error = np.append(np.abs(np.imag((middle - exact) * np.conj(direction))), 0.0)
-    edge = np.zeros(count, dtype=np.int64)
+    ahead = (exact - point[:-1]) * np.conj(tangent[:-1])
+    rough = np.append(np.abs(ahead.imag - curvature[:-1] * np.abs(ahead) ** 2 / 2), 0.0)
+    edge = np.zeros(t.size, dtype=np.int64)
     edge[0], edge[-1] = -1, 1
-    return np.full(count, piece), point, tangent, curvature, edge, quintic, error
+    return np.full(t.size, piece), point, tangent, curvature, edge, quintic, error, rough
 
 
 def _chord_length(outline: Outline, piece: int, span: tuple[float, float]) -> float:
@@ -295,7 +328,7 @@ def _osculating_distance(cloud: Cloud, index: Integers, local: Points) -> Reals:
     # Left-hand distance to a circle of curvature k, written so that it stays exact as k tends to 0.
     inner = np.maximum(1 - 2 * curvature * left + curvature**2 * squared, 0.0)
     # Beyond the circle's centre its far side would come nearer: there the side of the tangent decides.
-    to_circle = np.sign(left) * np.abs((2 * left - curvature * squared) / (1 + np.sqrt(inner)))
+    to_circle = (2 * left - curvature * squared) / (1 + np.sqrt(inner))
     to_circle = np.where(curvature * left > 0.5, np.sign(left) * np.sqrt(squared), to_circle)
     beyond = cloud.edge[index] * along > 0
     side = np.real((local - cloud.point[index]) * np.conj(1j * cloud.hand[index]))
