@@ -133,7 +133,7 @@ def _freeing_turn(e: Engagement) -> float | None:
     moved = replace(e, angle_b=e.angle_b + best)
     s = sweep(moved)
     least = float(distances_at(moved, s.psi).min())
-    freedom = window(s, (e.b.r_min + e.b.r_max) / 2, max(least, 0.0))
+    freedom = window(s, (e.b.r_min + e.b.r_max) / 2, least)
     low, high = float(freedom.back.max()), float(freedom.ahead.min())
     return best + (low + high) / 2 if low < high else None
 

@@ -199,7 +199,10 @@ def test_early_contact_of_eight_leaves_is_reported_as_long_as_its_addendum_says(
 
 def test_a_deepened_clock_pair_that_binds_is_named_by_what_meets():
     members = clock(8)
-    causes_found = {f.cause for f in found(clock_machine(members, members.centre_distance - 0.15)) if f.binds}
+    # A little too deep the faces meet, then the wheel's tip corner strikes the leaf, then the tips reach the roots.
+    little = {f.cause for f in found(clock_machine(members, members.centre_distance - 0.15)) if f.binds}
+    assert little == {Cause.NEGATIVE_PLAY}
+    causes_found = {f.cause for f in found(clock_machine(members, members.centre_distance - 0.2)) if f.binds}
     assert causes_found == {Cause.TIP}
     deeper = {f.cause for f in found(clock_machine(members, members.centre_distance - 0.35)) if f.binds}
     assert deeper == {Cause.ROOT}
