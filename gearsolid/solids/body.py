@@ -6,7 +6,7 @@ from OCP.TopoDS import TopoDS, TopoDS_Solid
 from gearsolid.curves.fitted import fitted
 from gearsolid.curves.outline import Outline
 from gearsolid.pairs.part import Body, is_toothed
-from gearsolid.solids.check import VOLUME_TOL, check_solid
+from gearsolid.solids.check import VOLUME_TOL, check_prism, check_solid
 from gearsolid.solids.twisted import twisted_wall
 from gearsolid.solids.walls import Wall, bore_wall, join_faces, plane_face, prism_walls
 
@@ -22,20 +22,28 @@ def body_solid(body: Body, tol: float = 1e-4) -> cq.Solid:
         tol: allowed distance of a fitted flank from the exact one [mm]; tightened where the volume asks for it.
 
     Returns:
-        One valid solid whose volume is the body's within 1e-6 of it.
+        One solid whose volume is the body's within 1e-6 of it. A straight body is judged by its end faces, which hold
+        every boundary; a helical one by the kernel's full check, which every body passes again when a file is written.
 
     Raises:
         SolidError: the kernel's solid is faulty or has another volume.
         ToleranceError: a flank cannot be fitted.
     """
-    return check_solid(cq.Solid(build_solid(body, tol)), body.volume)
+    solid = cq.Solid(build_solid(body, tol))
+    if body.twists:
+        return check_solid(solid, body.volume)
+    return check_prism(solid, _section(body) - (abs(body.bore.mouth.area) if body.bore else 0.0))
+
+
+def _section(body: Body) -> float:
+    """Area of outer boundary and holes [mm2], the bore not yet taken off."""
+    return body.outer.area + sum(h.area for h in body.holes)
 
 
 def build_solid(body: Body, tol: float = 1e-4) -> TopoDS_Solid:
     """The kernel's solid of a body, not checked; `tol` [mm] as for `body_solid`."""
     outlines = [body.outer, *body.holes, *(b.outline for b in body.bosses)]
-    section = sum(o.area for o in outlines[: 1 + len(body.holes)])
-    area_tol = _AREA_SHARE * VOLUME_TOL * abs(section) / len(outlines)
+    area_tol = _AREA_SHARE * VOLUME_TOL * abs(_section(body)) / len(outlines)
 
     def walls(outline: Outline, z: float, height: float) -> list[Wall]:
         return prism_walls(fitted(outline, tol, area_tol), z, height)

@@ -11,7 +11,7 @@ from gearsolid.output.deviation import flank_deviation
 from gearsolid.pairs.part import Body, Boss
 from gearsolid.shop.bore import Bore
 from gearsolid.solids.body import body_solid, build_solid
-from gearsolid.solids.check import check_solid, exact_volume
+from gearsolid.solids.check import check_prism, check_solid, exact_volume
 from gearsolid.teeth.internal import InternalGear
 from gearsolid.teeth.involute import InvoluteGear
 
@@ -150,3 +150,17 @@ def test_checker_refuses_two_solids_and_an_open_one():
 def test_impossible_bodies_are_refused_with_their_limits(make, message):
     with pytest.raises(DesignError, match=message):
         make()
+
+
+def test_end_faces_of_another_section_are_refused():
+    """The quick check of straight bodies is itself checked."""
+    body = TOOTHED["small involute 8"]
+    solid = body_solid(body)
+    assert check_prism(solid, body.outer.area + sum(h.area for h in body.holes)) is solid
+    with pytest.raises(SolidError, match="end faces cover"):
+        check_prism(solid, 1.00001 * body.outer.area)
+
+
+def test_holes_over_the_rim_are_refused_by_the_end_face():
+    with pytest.raises(SolidError):
+        body_solid(Body(disc(10.0), 4.0, holes=(holes(3, 9.5, 2.0),)))
