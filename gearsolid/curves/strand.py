@@ -23,11 +23,13 @@ _SAMPLES = 49
 _SHARES = (1 - np.cos(np.linspace(0, np.pi, _SAMPLES))) / 2
 # Places looked at together when the end of a strand is narrowed down, and how often for an end that must be exact.
 _GRID = np.linspace(0, 1, 17)
-_COARSE, _EXACT = 3, 13
+_COARSE, _EXACT = 2, 13
 # A normal this close to its furthest reach touches the pitch circle: both contacts are one, in a corner of the roll.
 _GRAZES = 1e-9
 # A turn of the direction smaller than this [rad] is no corner.
 _STRAIGHT = 1e-12
+# Spacing of the differences for curvatures, as a share of the span.
+_DIFFERENCE = 1e-4
 
 
 class Strand(NamedTuple):
@@ -87,9 +89,17 @@ class _Samples(NamedTuple):
 
     @classmethod
     def of(cls, curve: Curve, first: float, last: float) -> "_Samples":
-        span = Section(curve, first, last)
         t = first + (last - first) * _SHARES
-        return cls(span, t, span.point(t), span.tangent(t), span.curvature(t))
+        return cls(Section(curve, first, last), t, *_bent(curve, t, (first, last)))
+
+
+def _bent(curve: Curve, t: Reals, span: tuple[float, float]) -> tuple[Points, Points, Reals]:
+    """Points, directions and curvatures, these by differences: near enough to tell a pressing contact."""
+    step = _DIFFERENCE * (span[1] - span[0])
+    beside = np.stack([t, np.maximum(t - step, span[0]), np.minimum(t + step, span[1])])
+    p, tangent = curve.point(beside), curve.tangent(beside)
+    curvature = np.angle(tangent[2] * np.conj(tangent[1])) / np.maximum(np.abs(p[2] - p[1]), np.finfo(float).tiny)
+    return p[0], tangent[0], curvature
 
 
 def strands(
@@ -251,8 +261,8 @@ class _Contacts(NamedTuple):
         return self.motion.meet(self.span.curve.point(t), self.span.curve.tangent(t), self.branch)
 
     def _presses(self, t: Reals) -> np.ndarray:
-        curve = self.span.curve
-        return presses(self.motion, curve.point(t), curve.tangent(t), curve.curvature(t), self._roll(t)) > 0
+        p, tangent, curvature = _bent(self.span.curve, t, self.span.curve.span)
+        return presses(self.motion, p, tangent, curvature, self.motion.meet(p, tangent, self.branch)) > 0
 
 
 def _touching(piece: int, span: _Samples, motion: Rolling, keep: Callable[[Points], np.ndarray]) -> list[Strand]:

@@ -8,7 +8,6 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
-from itertools import combinations_with_replacement
 from typing import NamedTuple
 
 import numpy as np
@@ -32,6 +31,7 @@ _AT_JOINT = 1e-3
 _STEPS = 14
 _MET = 1e-13
 _FINEST = 1e-6
+_OFFSETS = np.array([-1.0, 0.0, 1.0])
 _LEAST_ANGLE = 1e-6
 # A place this share of a line's parameter range ahead is the place itself.
 _HERE = 1e-9
@@ -161,17 +161,15 @@ class Sweep:
         return float(max(np.abs(line.z).max() for line in self._lines))
 
     @cached_property
-    def _turnoffs(self) -> list[list[_Turnoff]]:
-        """For each line, in travel order, where another line comes in from its left."""
-        found: list[list[_Turnoff]] = [[] for _ in self._lines]
-        for i, j in combinations_with_replacement(range(len(self._lines)), 2):
-            for turn in self._overlapping(i, j):
-                for ti, tj, sine in self._crossings(i, j, turn):
-                    if sine < 0:
-                        found[i].append(_Turnoff(ti, j, tj, turn))
-                    else:
-                        found[j].append(_Turnoff(tj, i, ti, -turn))
-        return [sorted(offs) for offs in found]
+    def _approaches(self) -> dict[int, list["_Approach"]]:
+        """Known approaches of other lines to a line, in its travel order."""
+        return {}
+
+    def _approaching(self, i: int) -> list["_Approach"]:
+        if i not in self._approaches:
+            pairs = [(j, turn) for j in range(len(self._lines)) for turn in self._overlapping(i, j)]
+            self._approaches[i] = sorted(a for j, turn in pairs for a in self._chords(i, j, turn))
+        return self._approaches[i]
 
     def _overlapping(self, i: int, j: int) -> range:
         """Turns in pitches that bring line j over line i."""
@@ -180,22 +178,32 @@ class Sweep:
             return range(0)
         first = math.ceil((a.angles[0] - b.angles[1]) / self.pitch - _JOIN)
         last = math.floor((a.angles[1] - b.angles[0]) / self.pitch + _JOIN)
-        return range(max(first, 0) if i == j else first, last + 1)
+        return range(first, last + 1)
 
-    def _crossings(self, i: int, j: int, turn: int) -> list[tuple[float, float, float]]:
-        """Crossings of line i with line j turned: both parameters, and the sine from the second to the first."""
+    def _chords(self, i: int, j: int, turn: int) -> list["_Approach"]:
+        """Where chords of line i cross chords of line j turned."""
         a, b, factor = self._lines[i], self._lines[j], complex(np.exp(1j * self.pitch * turn))
         guesses, chords = chord_crossings(a.t, a.z, b.t, b.z * factor)
-        if i == j and turn == 0:
-            apart = chords[:, 1] > chords[:, 0] + 1
-            guesses, chords = guesses[apart], chords[apart]
         away = ~self._at_joint(a, b, factor, np.interp(guesses[:, 0], a.t, a.z))
-        found: list[tuple[float, float, float]] = []
-        for guess, (k, m) in zip(guesses[away], chords[away], strict=True):
-            met = _met(a, b, factor, guess, (a.t[k + 1] - a.t[k], b.t[m + 1] - b.t[m]), self._size)
-            if met and not any(abs(met[0] - f[0]) <= a.here and abs(met[1] - f[1]) <= b.here for f in found):
-                found.append(met)
-        return found
+        if i == j and turn == 0:
+            away &= np.abs(chords[:, 1] - chords[:, 0]) > 1
+        return [
+            _Approach(float(at), j, turn, float(onto), float(a.t[k + 1] - a.t[k]), float(b.t[m + 1] - b.t[m]))
+            for (at, onto), (k, m) in zip(guesses[away], chords[away], strict=True)
+        ]
+
+    def _turnoff(self, line: int, after: float) -> _Turnoff | None:
+        """The first place on a line where another comes in from its left."""
+        on, best = self._lines[line], None
+        for way in self._approaching(line):
+            if best and way.at > best.at + way.chord:
+                break
+            if way.at < after - way.chord:
+                continue
+            met = _met(on, self._lines[way.line], complex(np.exp(1j * self.pitch * way.turn)), way, self._size)
+            if met and met.sine < 0 and met.at > after and (best is None or met.at < best.at):
+                best = _Turnoff(met.at, way.line, met.onto, way.turn)
+        return best
 
     def _at_joint(self, a: _Line, b: _Line, factor: complex, z: Points) -> np.ndarray:
         """Whether points lie where ends of both lines meet: there lines join, and cross only by rounding."""
@@ -205,21 +213,29 @@ class Sweep:
         near: np.ndarray = np.any(np.abs(z[:, None] - ends_a[i]) <= close, axis=1)
         return near
 
-    @cached_property
-    def _gates(self) -> list[tuple[list[float], list[float]]]:
-        """For each line, where it leaves the tip circle's inside and where it enters it."""
-        return [(self._passages(line, -1), self._passages(line, 1)) for line in self._lines]
+    def _gates(self, line: int, way: int) -> list[tuple[float, int]]:
+        """Where a line passes the tip circle inwards (+1) or outwards (-1): parameter, about, and chord."""
+        on = self._lines[line]
+        over = np.abs(on.z) - self.tip
+        chords = np.flatnonzero(np.diff(self.within(on.z).astype(int)) == way)
+        at = on.t[chords] + (on.t[chords + 1] - on.t[chords]) * over[chords] / (over[chords] - over[chords + 1])
+        return [(float(t), int(k)) for t, k in zip(at, chords, strict=True)]
 
-    def _passages(self, line: _Line, way: int) -> list[float]:
-        """Where a line passes the tip circle, inwards (+1) or outwards (-1)."""
-        inside = self.within(line.z).astype(int)
-
-        def over(t: float) -> float:
-            return float(np.abs(line.strand.curve.point(np.asarray(t)))) - self.tip
-
-        return [
-            float(brentq(over, line.t[k], line.t[k + 1], xtol=1e-15)) for k in np.flatnonzero(np.diff(inside) == way)
-        ]
+    def _passage(self, line: int, at: float, chord: int) -> float:
+        """The exact parameter at which a line passes the tip circle on a chord."""
+        on = self._lines[line]
+        curve, low, high = on.strand.curve, float(on.t[chord]), float(on.t[chord + 1])
+        step = (high - low) / 4
+        for _ in range(_STEPS):
+            u = np.clip(at + step * _OFFSETS, low, high)
+            radii = np.abs(curve.point(u))
+            miss = float(radii[1]) - self.tip
+            if abs(miss) <= _MET * self._size:
+                return at
+            move = -miss * float(u[2] - u[0]) / float(radii[2] - radii[0])
+            at = min(max(at + move, low), high)
+            step = min(step, max(abs(move), _FINEST * (high - low)))
+        return float(brentq(lambda t: abs(complex(curve.point(np.asarray(t)))) - self.tip, low, high, xtol=1e-15))
 
     def _deepest(self) -> tuple[int, float]:
         """Line and parameter where the carried body reaches deepest."""
@@ -263,11 +279,14 @@ class Sweep:
 
     def _next(self, line: int, here: float) -> _Turnoff:
         """Where the edge goes on from a place on a line; line -1 stands for the tip circle."""
-        on = self._lines[line]
-        after = here + on.here
-        events = [off for off in self._turnoffs[line] if off.at > after]
-        events += [_Turnoff(t, -1, 0.0, 0) for t in self._gates[line][0] if t > after]
-        return min(events) if events else self._joint(line)
+        after = here + self._lines[line].here
+        off = self._turnoff(line, after)
+        exits = [gate for gate in self._gates(line, -1) if gate[0] > after and (off is None or gate[0] < off.at)]
+        if exits:
+            passed = self._passage(line, *min(exits))
+            if passed > after and (off is None or passed < off.at):
+                return _Turnoff(passed, -1, 0.0, 0)
+        return off or self._joint(line)
 
     def _joint(self, line: int) -> _Turnoff:
         """The line that goes on where one ends; of several, the one with the rest of them on its right."""
@@ -291,16 +310,19 @@ class Sweep:
     def _along_tip(self, before: Stretch) -> tuple[Stretch, _Turnoff]:
         """The tip arc from where a stretch ends to the next line that comes in."""
         start = float(np.angle(before.curve.point(np.asarray(before.last))))
-        ways = []
-        for j, line in enumerate(self._lines):
-            for t in self._gates[j][1]:
-                angle = float(np.angle(line.strand.curve.point(np.asarray(t))))
-                ahead = (self.hand * (angle - start)) % self.pitch
-                ways.append((ahead, j, t, round((start + self.hand * ahead - angle) / self.pitch)))
+
+        def ahead(line: int, t: float) -> tuple[float, int]:
+            angle = float(np.angle(self._lines[line].strand.curve.point(np.asarray(t))))
+            share = (self.hand * (angle - start)) % self.pitch
+            return share, round((start + self.hand * share - angle) / self.pitch)
+
+        ways = sorted((ahead(j, t)[0], j, t, k) for j in range(len(self._lines)) for t, k in self._gates(j, 1))
         if not ways:
             raise ToleranceError(f"nothing comes in again from the tip circle of {self.tip:.6g} mm radius")
-        ahead, j, t, turn = min(ways)
-        arc = Arc(0, self.tip, start, start + self.hand * ahead)
+        # Two that come in close together are told apart by their exact places.
+        exact = [(j, self._passage(j, t, k)) for _, j, t, k in ways[:2]]
+        (share, turn), j, t = min((ahead(j, t), j, t) for j, t in exact)
+        arc = Arc(0, self.tip, start, start + self.hand * share)
         return Stretch(arc, 0.0, 1.0, before.turn, None), _Turnoff(0.0, j, t, turn)
 
     def _checked(self, path: list[Stretch], turn: int) -> list[Stretch]:
@@ -314,16 +336,32 @@ class Sweep:
         return path
 
 
-def _met(
-    a: _Line, b: _Line, factor: complex, guess: Reals, steps: tuple[float, float], size: float
-) -> tuple[float, float, float] | None:
-    """A crossing from a guess by Newton's method on differences that shrink with the steps; None where they miss."""
-    ta, tb = float(guess[0]), float(guess[1])
-    ha, hb = steps[0] / 4, steps[1] / 4
-    offsets = np.array([-1.0, 0.0, 1.0])
+class _Approach(NamedTuple):
+    """Where chords of two lines cross: parameter, about, other line, its turn and parameter, lengths of the chords."""
+
+    at: float
+    line: int
+    turn: int
+    onto: float
+    chord: float
+    other_chord: float
+
+
+class _Crossing(NamedTuple):
+    """A crossing of two lines: both parameters, and the sine of the angle from the second to the first."""
+
+    at: float
+    onto: float
+    sine: float
+
+
+def _met(a: _Line, b: _Line, factor: complex, way: _Approach, size: float) -> _Crossing | None:
+    """A crossing from its chords by Newton's method on differences that shrink with the steps; None where they miss."""
+    ta, tb = way.at, way.onto
+    ha, hb = way.chord / 4, way.other_chord / 4
     for _ in range(_STEPS):
         ta, tb = min(max(ta, float(a.t[0])), a.last), min(max(tb, float(b.t[0])), b.last)
-        ua, ub = np.clip(ta + ha * offsets, a.t[0], a.last), np.clip(tb + hb * offsets, b.t[0], b.last)
+        ua, ub = np.clip(ta + ha * _OFFSETS, a.t[0], a.last), np.clip(tb + hb * _OFFSETS, b.t[0], b.last)
         za, zb = a.strand.curve.point(ua), b.strand.curve.point(ub) * factor
         along_a, along_b = (za[2] - za[0]) / (ua[2] - ua[0]), (zb[2] - zb[0]) / (ub[2] - ub[0])
         miss = za[1] - zb[1]
@@ -332,9 +370,9 @@ def _met(
         if not abs(sine) > _LEAST_ANGLE * scale:
             return None
         if abs(miss) <= _MET * size:
-            return ta, tb, sine / scale
-        step_a = -float(np.imag(np.conj(miss) * along_b)) / -sine
-        step_b = -float(np.imag(np.conj(miss) * along_a)) / -sine
+            return _Crossing(ta, tb, sine / scale)
+        step_a = float(np.imag(np.conj(miss) * along_b)) / sine
+        step_b = float(np.imag(np.conj(miss) * along_a)) / sine
         ta, tb = ta + step_a, tb + step_b
         ha = min(ha, max(abs(step_a), _FINEST * (a.last - float(a.t[0]))))
         hb = min(hb, max(abs(step_b), _FINEST * (b.last - float(b.t[0]))))

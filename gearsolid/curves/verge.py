@@ -1,10 +1,10 @@
 """Where an envelope sets out: the carried normal only just reaches the pitch circle there."""
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
-from numpy.polynomial import Polynomial
 
 from gearsolid.curves.curve import Curve, Points, Reals
 from gearsolid.curves.envelope import Envelope
@@ -58,30 +58,31 @@ class Verge(Curve):
         return _NEAR * self.last
 
     @cached_property
-    def _continued(self) -> tuple[Polynomial, Polynomial]:
-        """Coordinates as polynomials of u / near, through the points at the nodes."""
+    def _continued(self) -> list[Points]:
+        """Coefficients of the polynomial of u / near through the nodes' points, and of its two derivatives by u."""
         z = self._plain.point(self.parameter(_NODES * self._near))
-        degree = _NODES.size - 1
-        return Polynomial.fit(_NODES, z.real, degree), Polynomial.fit(_NODES, z.imag, degree)
+        powers = [np.polyfit(_NODES, z, _NODES.size - 1)]
+        for _ in range(2):
+            powers.append(np.asarray(np.polyder(powers[-1]) / self._near, dtype=complex))
+        return powers
 
-    def _close(self, t: Reals, order: int) -> Points:
-        x, y = self._continued
-        s = t / self._near
-        along: Reals = x.deriv(order)(s)
-        across: Reals = y.deriv(order)(s)
-        return np.asarray((along + 1j * across) / self._near**order, dtype=complex)
+    def _joined(self, t: Reals, order: int, far: Callable[[Reals], Points]) -> Points:
+        """The polynomial's derivative of an order close to the verge, `far` elsewhere."""
+        t = np.asarray(t, dtype=float)
+        close = t < self._near
+        value = far(np.maximum(t, self._near))
+        if not np.any(close):
+            return value
+        return np.where(close, np.polyval(self._continued[order], t / self._near), value)
 
     def point(self, t: Reals) -> Points:
-        t = np.asarray(t, dtype=float)
-        far = self._plain.point(self.parameter(np.maximum(t, self._near)))
-        return np.where(t < self._near, self._close(t, 0), far)
+        return self._joined(t, 0, lambda u: self._plain.point(self.parameter(u)))
 
     def derivative(self, t: Reals) -> Points:
-        t = np.asarray(t, dtype=float)
-        u = np.maximum(t, self._near)
-        far = self._plain.derivative(self.parameter(u)) * self.side * self.power * u ** (self.power - 1)
-        return np.where(t < self._near, self._close(t, 1), far)
+        def far(u: Reals) -> Points:
+            return self._plain.derivative(self.parameter(u)) * self.side * self.power * u ** (self.power - 1)
+
+        return self._joined(t, 1, far)
 
     def second(self, t: Reals) -> Points:
-        t = np.asarray(t, dtype=float)
-        return np.where(t < self._near, self._close(t, 2), super().second(np.maximum(t, self._near)))
+        return self._joined(t, 2, super().second)

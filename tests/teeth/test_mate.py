@@ -134,11 +134,25 @@ PAIRS = {
 
 @pytest.mark.parametrize(("given", "make"), PAIRS.values(), ids=PAIRS)
 def test_a_member_rolls_with_its_mate(given, make):
-    mate = make(given)
-    contact = rolled(given, mate)
+    """They touch and nowhere overlap; play has no meaning here, as the given tips touch the root all the way."""
+    contact = rolled(given, make(given))
     assert contact.verdict == "touches"
     assert contact.clearance == pytest.approx(0, abs=1e-6)
-    assert contact.play == pytest.approx(0, abs=1e-6)
+
+
+THINNED = {
+    "involute": (InvoluteGear(20, 1).outline, lambda g: external_mate(g, 10, 30, 15.9, tooth_thinning=0.02)),
+    "ring": (InvoluteGear(20, 1).outline, lambda g: ring_mate(g, 10, 60, 29.3, tooth_thinning=0.02)),
+    "pinion": (InternalGear(60, 1).outline, lambda g: inner_mate(g, 30, 20, 10.9, tooth_thinning=0.02)),
+    "straight teeth": (straight(24, 13, 11, 0.35, 0.9), lambda g: external_mate(g, 12, 30, 15.7, tooth_thinning=0.02)),
+}
+
+
+@pytest.mark.parametrize(("given", "make"), THINNED.values(), ids=THINNED)
+def test_play_is_what_the_mate_was_thinned_by(given, make):
+    contact = rolled(given, make(domed_tips(given, 0.1)))
+    assert contact.verdict == "rolls"
+    assert contact.play == pytest.approx(0.02, abs=1e-6)
 
 
 @pytest.mark.parametrize("name", ["involute 20 and 30", "ring around 20", "pinion in a ring", "disc in a ring of pins"])
