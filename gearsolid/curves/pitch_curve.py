@@ -394,9 +394,8 @@ class Polar(Curve):
     def radius(self, t: Reals, derivative: int = 0) -> Reals:
         """Radius [mm] at polar angles t [rad], or a derivative of it by the angle."""
         n = 1j * self.order * np.arange(len(self.waves))
-        terms = np.exp(np.multiply.outer(np.asarray(t, dtype=float), n))
-        found: Reals = np.real(terms @ (np.array(self.waves) * n**derivative))
-        return found
+        turn = np.exp(1j * self.order * np.asarray(t, dtype=float))
+        return np.asarray(np.polyval((np.array(self.waves) * n**derivative)[::-1], turn).real, dtype=float)
 
     def point(self, t: Reals) -> Points:
         return self.radius(t) * np.exp(1j * np.asarray(t))

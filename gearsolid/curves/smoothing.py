@@ -9,8 +9,10 @@ Wahba, Numerische Mathematik 31, 1979.
 from typing import NamedTuple
 
 import numpy as np
-from scipy.interpolate import BSpline
-from scipy.linalg import eigh, qr, solve_triangular
+from numpy.typing import NDArray
+from scipy.interpolate import BSpline, make_interp_spline
+from scipy.linalg import solveh_banded
+from scipy.sparse import csr_array
 
 from gearsolid.curves.curve import Points, Reals
 from gearsolid.curves.fit import Spline
@@ -25,7 +27,7 @@ _FEWEST_SPANS, _MOST_SPANS = 3, 100
 LEAST_POINTS = 12
 _PENALTIES = 10.0 ** np.arange(-14, 7, 0.5)
 # Share of the largest entry that keeps poles without points from running away.
-_RIDGE = 1e-7
+_RIDGE = 1e-14
 _ROUNDS = 4
 _FOOT_STEPS = 5
 
@@ -68,8 +70,8 @@ def smoothed(
     held = {k: z for k, z in fixed.items() if z is not None}
     u = np.clip(shares, 0.0, 1.0)
     for _ in range(_ROUNDS):
-        matrix = BSpline.design_matrix(u, knots, _DEGREE).toarray()
-        poles = _penalised(matrix, points, np.diff(np.eye(matrix.shape[1]), _ORDER, axis=0), held)
+        matrix = csr_array(BSpline.design_matrix(u, knots, _DEGREE))
+        poles = _penalised(matrix, points, csr_array(np.diff(np.eye(matrix.shape[1]), _ORDER, axis=0)), held)
         spline = Spline(_DEGREE, tuple(knots.tolist()), tuple(poles.tolist()))
         u = feet(spline, points, u)
     return _judged(spline, points, u)
@@ -95,12 +97,12 @@ def smoothed_rim(points: Points, shares: Reals, rows: int, step: complex) -> Smo
     turns[np.arange(spans + _DEGREE), np.arange(spans + _DEGREE) % spans] = step ** (
         np.arange(spans + _DEGREE) // spans
     )
-    penalty = np.diff(np.eye(spans + _DEGREE), _ORDER, axis=0) @ turns
+    penalty = csr_array(np.diff(np.eye(spans + _DEGREE), _ORDER, axis=0)) @ csr_array(turns)
     clamped = np.concatenate((np.zeros(_DEGREE), np.linspace(0, 1, spans + 1), np.ones(_DEGREE)))
     u = np.mod(shares, 1.0)
     seen = points * step ** -np.floor(shares)
     for _ in range(_ROUNDS):
-        matrix = BSpline.design_matrix(u, knots, _DEGREE).toarray() @ turns
+        matrix = csr_array(BSpline.design_matrix(u, knots, _DEGREE)) @ csr_array(turns)
         poles = turns @ _penalised(matrix, seen, penalty, {})
         spline = _clamped(BSpline(knots, poles, _DEGREE), clamped)
         # Points whose feet lie on the next pitch are turned back once more.
@@ -149,34 +151,48 @@ def _judged(spline: Spline, points: Points, u: Reals) -> Smoothed:
 def _clamped(spline: BSpline, knots: Reals) -> Spline:
     """The same curve over 0 to 1 with its ends as poles."""
     averages = np.array([knots[k + 1 : k + 1 + _DEGREE].mean() for k in range(knots.size - _DEGREE - 1)])
-    matrix = BSpline.design_matrix(np.clip(averages, 0.0, 1.0), knots, _DEGREE).toarray()
-    return Spline(_DEGREE, tuple(knots.tolist()), tuple(np.linalg.solve(matrix, spline(averages)).tolist()))
+    z = spline(averages)
+    poles = make_interp_spline(averages, np.column_stack([z.real, z.imag]), _DEGREE, t=knots).c
+    return Spline(_DEGREE, tuple(knots.tolist()), tuple((poles[:, 0] + 1j * poles[:, 1]).tolist()))
 
 
-def _penalised(matrix: Points | Reals, points: Points, penalty: Points | Reals, held: dict[int, complex]) -> Points:
+def _penalised(matrix: csr_array, points: Points, penalty: csr_array, held: dict[int, complex]) -> Points:
     """Poles with the penalty that cross-validation finds best; those in `held` keep their place."""
     poles = np.zeros(matrix.shape[1], dtype=complex)
     poles[list(held)] = list(held.values())
-    free = np.setdiff1d(np.arange(matrix.shape[1]), list(held))
+    free = np.setdiff1d(_interleaved(matrix.shape[1]), list(held), assume_unique=True)
     target, rough = points - matrix @ poles, -(penalty @ poles)
-    d = penalty[:, free]
-    ridge = _RIDGE * np.max(np.abs(matrix)) * np.eye(free.size)
-    frame, factor = qr(np.vstack((matrix[:, free], ridge)), mode="economic")
-    frame = frame[: points.size]
-    seen = frame.conj().T @ target
-    unseen = float(np.sum(np.abs(target - frame @ seen) ** 2))
-    # In the frame where the points weigh evenly the penalty is one strength for each direction.
-    whitened = solve_triangular(factor, d.conj().T, trans="C").conj().T
-    strength, basis = eigh(whitened.conj().T @ whitened)
-    pull, bend = basis.conj().T @ seen, basis.conj().T @ (whitened.conj().T @ rough)
-    scale = float(np.sum(np.abs(factor) ** 2) / np.sum(np.abs(d) ** 2))
+    a, d = csr_array(matrix[:, free]), csr_array(penalty[:, free])
+    gram, stiff = (a.conj().T @ a).toarray(), (d.conj().T @ d).toarray()
+    gram += _RIDGE * np.max(np.abs(gram)) * np.eye(free.size)
+    pull, bend = a.conj().T @ target, d.conj().T @ rough
+    width = int(np.max(np.abs(np.subtract(*np.nonzero(np.abs(gram) + np.abs(stiff))))))
+    scale = float(np.trace(np.abs(gram)) / np.trace(np.abs(stiff)))
     best = np.inf, pull
     for penalised in _PENALTIES * scale:
-        keep = 1 / (1 + penalised * np.maximum(strength, 0.0))
-        found = keep * (pull + penalised * bend)
-        miss = unseen + float(np.sum(np.abs(pull - found) ** 2))
-        score = miss / max(points.size - float(np.sum(keep)), 1.0) ** 2
+        # The poles, and how far each follows its own points: the sum of that is what the fit has cost.
+        answers = np.column_stack([pull + penalised * bend, gram])
+        found = solveh_banded(_band(gram + penalised * stiff, width), answers, lower=True)
+        cost = float(np.trace(found[:, 1:]).real)
+        miss = float(np.sum(np.abs(target - a @ found[:, 0]) ** 2))
+        score = miss / max(points.size - cost, 1.0) ** 2
         if score < best[0]:
-            best = score, found
-    poles[free] = solve_triangular(factor, basis @ best[1])
+            best = score, found[:, 0]
+    poles[free] = best[1]
     return poles
+
+
+def _interleaved(count: int) -> NDArray[np.int64]:
+    """Numbers from both ends in turn: poles in this order have their neighbours near, round a rim too."""
+    order = np.empty(count, dtype=np.int64)
+    half = (count + 1) // 2
+    order[::2], order[1::2] = np.arange(half), np.arange(count - 1, half - 1, -1)
+    return order
+
+
+def _band(matrix: Points, width: int) -> Points:
+    """Diagonals on and below the main one, as rows."""
+    rows = np.zeros((width + 1, matrix.shape[0]), dtype=matrix.dtype)
+    for k in range(width + 1):
+        rows[k, : matrix.shape[0] - k] = np.diagonal(matrix, -k)
+    return rows

@@ -14,14 +14,13 @@ def once_round(outline, per_mm, noise=0.0, seed=1, centre=0.0, turn=0.0):
     """Points along a whole outline, each off by normal noise in x and y [mm], about another centre and turned [rad]."""
     rng = np.random.default_rng(seed)
     rows = []
-    for k in range(outline.order):
-        for p in outline.pieces:
-            length = ArcLength(p.curve, 1e-8)
-            count = max(2, round(length.total * per_mm))
-            # A probe does not come by at the same places of every tooth.
-            at = (np.arange(count) + rng.uniform(0, 1)) / count * length.total
-            rows.append(p.curve.point(length.parameter(at)) * outline.step**k)
-    z = np.concatenate(rows)
+    for p in outline.pieces:
+        length = ArcLength(p.curve, 1e-8)
+        count = max(2, round(length.total * per_mm))
+        # A probe does not come by at the same places of every tooth.
+        at = (np.arange(count) + rng.uniform(0, 1, (outline.order, 1))) / count * length.total
+        rows.append(p.curve.point(length.parameter(at)))
+    z = (np.concatenate(rows, axis=1) * outline.step ** np.arange(outline.order)[:, None]).ravel()
     z = z + noise * (rng.standard_normal(z.size) + 1j * rng.standard_normal(z.size))
     return z * np.exp(1j * turn) + centre
 
@@ -38,7 +37,8 @@ def drawn(path, outline, *, units=4, scale=1.0, layer="0", leave_out=0, polyline
     document.units = units
     space = document.modelspace()
     style = {"layer": layer}
-    parts = [(c.curve, outline.step**k) for k in range(outline.order) for c in fitted(outline, 1e-6).pieces]
+    pieces = fitted(outline, 1e-6).pieces
+    parts = [(p.curve, outline.step**k) for k in range(outline.order) for p in pieces]
     for curve, turn in parts[leave_out:]:
         factor = complex(turn) * scale
         match curve:

@@ -1,6 +1,7 @@
 """Non-circular wheels against closed forms, and pairs against polygons that know nothing of the law of gearing."""
 
 import re
+from functools import lru_cache
 from itertools import pairwise
 
 import numpy as np
@@ -129,8 +130,13 @@ def polygon(outline, per_piece=24):
     return Polygon(np.column_stack([z.real, z.imag]))
 
 
+@lru_cache(maxsize=2)
+def polygons(pair):
+    return polygon(pair.driver.outline), polygon(pair.driven.outline)
+
+
 def placed(pair, driver_deg, late_deg=0.0):
-    driver, driven = polygon(pair.driver.outline), polygon(pair.driven.outline)
+    driver, driven = polygons(pair)
     for angle in driver_deg:
         turn = float(pair.driven_angle(angle)) + 180 + late_deg
         a = rotate(driver, angle, (0, 0))
@@ -148,7 +154,8 @@ def test_outlines_are_simple_and_hold_the_area_they_say(pair):
 
 def test_wheels_touch_and_never_overlap(pair):
     module = pair.driver.module
-    for a, b in placed(pair, np.linspace(0, 360, 49)):
+    # Steps that share nothing with the teeth, so that each pose looks at another phase of contact.
+    for a, b in placed(pair, np.arange(24) * 137.5077 % 360):
         # Chords of the polygons lie a little inside convex flanks.
         assert a.intersection(b).area < 2e-6 * module**2
         assert a.distance(b) < 5e-4 * module
@@ -157,7 +164,7 @@ def test_wheels_touch_and_never_overlap(pair):
 @pytest.mark.parametrize("late", [-0.05, 0.05])
 def test_both_flanks_of_a_tooth_are_in_contact(pair, late):
     """Turned by a little either way, the driven wheel overlaps everywhere: there is no play to hide an error in."""
-    for a, b in placed(pair, np.linspace(3, 363, 13), late):
+    for a, b in placed(pair, np.linspace(3, 363, 7), late):
         assert a.intersection(b).area > 1e-3 * pair.driver.module**2
 
 
