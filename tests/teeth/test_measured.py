@@ -40,7 +40,9 @@ MEMBERS = {
 }
 
 
-@pytest.mark.parametrize("noise", [0.0, 1e-3, 4e-3], ids=["exact", "1 um", "4 um"])
+@pytest.mark.parametrize(
+    "noise", [0.0, 2e-3, pytest.param(5e-3, marks=pytest.mark.slow)], ids=["exact", "2 um", "5 um"]
+)
 @pytest.mark.parametrize(("outline", "measure", "roles"), MEMBERS.values(), ids=MEMBERS)
 def test_a_member_comes_back_within_the_noise(outline, measure, roles, noise):
     centre, turn = 12.3 - 4.5j, 0.4

@@ -96,7 +96,15 @@ PAIRS = {
 }
 
 
-@pytest.fixture(params=PAIRS.values(), ids=PAIRS, scope="module")
+RARELY = {"ellipses", "two lobes on two", "ellipse and mate of two lobes"}
+
+
+@pytest.fixture(
+    params=[
+        pytest.param(make, id=name, marks=pytest.mark.slow if name in RARELY else ()) for name, make in PAIRS.items()
+    ],
+    scope="module",
+)
 def pair(request):
     return request.param()
 
