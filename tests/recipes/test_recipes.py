@@ -3,6 +3,7 @@
 import json
 import re
 import runpy
+from dataclasses import replace
 from html.parser import HTMLParser
 from math import cos, pi, radians
 from pathlib import Path
@@ -218,11 +219,12 @@ def test_the_gallery_names_every_recipe():
 def test_the_picture_in_the_gallery_is_the_machine_of_the_recipe():
     machine = read_recipe(ROOT / "recipes" / "printed-reducer.toml").machine
     stored = (ROOT / "recipes" / "printed-reducer.svg").read_text(encoding="utf-8")
-    drawn = picture(machine, roll_test(machine).worst)
+    # Thirty pins are equally near, so which of them is nearest is chance: the picture stands at the start.
+    drawn = picture(machine, replace(roll_test(machine).worst, input_angle=0.0, place=28.4 + 0j))
     number = re.compile(r"-?\d+(?:\.\d+)?")
     assert number.sub("#", stored) == number.sub("#", drawn)
     first, second = ([float(n) for n in number.findall(t)] for t in (stored, drawn))
-    # Last digits may differ between processors, and the tightest place of equal pins with them.
+    # Last digits may differ between processors.
     assert np.allclose(first, second, atol=2e-3)
 
 
