@@ -139,4 +139,4 @@ def test_readme_holds_two_command_lines_and_no_more():
     assert all("\n" not in c and c.startswith("python3 -m venv .venv && ") for c in commands)
     assert "gearsolid make recipes/" in commands[0]
     assert 'install --quiet -e ".[dev]"' in commands[1]
-    assert commands[1].endswith("-m pytest")
+    assert commands[1].endswith("-m pytest -n auto")
