@@ -30,6 +30,10 @@ _WITNESSES = 24
 _CHECKS = 4
 _SETTLED = 1e-11
 
+# An overlap this small [mm] is the rounding of a contact, and a turn this small [rad] is none.
+_ROUNDING = 1e-7
+_NO_TURN = 1e-6
+
 # Stops this close are the same [rad].
 _SAME = 1e-9
 
@@ -63,7 +67,7 @@ def window(s: Sweep, radius: float, least: float) -> Window:
     lever = radius * (_LEVER if least >= 0 else _STRONG_LEVER)
     poses = s.psi.size
     # Parts that are clear as they stand are stopped at no turn against the way asked for.
-    floor = -_SAME if least >= 0 else -np.inf
+    floor = -_NO_TURN if least >= -_ROUNDING else -np.inf
     free = _freedom(s, np.tile(s.psi, 2), np.repeat([-1.0, 1.0], poses), lever, floor)
     return Window(-free[:poses], free[poses:])
 

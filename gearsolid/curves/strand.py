@@ -28,6 +28,10 @@ _COARSE, _EXACT = 2, 13
 _GRAZES = 1e-9
 # A turn of the direction smaller than this [rad] is no corner.
 _STRAIGHT = 1e-12
+# Places that show which way a run goes, as shares of it.
+_MIDDLE = np.array([0.49, 0.51])
+# A place this share of a stretch from its end stands for the end.
+_NEARLY = 1e-6
 # Spacing of the differences for curvatures, as a share of the span.
 _DIFFERENCE = 1e-4
 
@@ -215,24 +219,48 @@ class _Contacts(NamedTuple):
         good[0], good[-1] = good[1] & finite[0], good[-2] & finite[-1]
         leaps = np.abs(np.diff(roll, prepend=roll[0])) > (np.pi if self.of_two else np.inf)
         with np.errstate(invalid="ignore"):
-            z, side = self.motion.place(span.p, roll), self.motion.turn(roll) * span.tangent
-            kept = keep(z)
-        found = []
+            kept = keep(self.motion.place(span.p, roll))
+        found: list[_Run] = []
         for start in [k for k in range(roll.size) if good[k] and (k == 0 or not good[k - 1] or leaps[k])]:
             end = start
             while end + 1 < roll.size and good[end + 1] and not leaps[end + 1]:
                 end += 1
             inside = np.flatnonzero(kept[start : end + 1]) + start
-            if inside.size == 0:
+            if inside.size:
+                low, high = max(int(inside[0]) - 1, start), min(int(inside[-1]) + 1, end)
+                first, opens = self._end(low, -1 if low == start else 0)
+                last, closes = self._end(high, 1 if high == end else 0)
+                found += self._run(first, last, opens, closes).parts()
                 continue
-            low, high = max(int(inside[0]) - 1, start), min(int(inside[-1]) + 1, end)
-            first, opens = self._end(low, -1 if low == start else 0)
-            last, closes = self._end(high, 1 if high == end else 0)
-            alone = int(low == high)
-            part = slice(max(low - alone, 0), high + alone + 1)
-            along = np.nansum(np.real(np.diff(z[part]) * np.conj(side[part][1:] + side[part][:-1])))
-            found += _Run(first, last, opens, closes, bool(along > 0)).parts()
+            # Even if no sample matters, what lies beyond the outermost ones may.
+            for k, way in ((start, -1), (end, 1)):
+                here, (t, power) = float(self.span.t[k]), self._end(k, way)
+                # At a verge itself rounding decides whether there is a contact.
+                if t != here and bool(keep(self._place(t + _NEARLY * (here - t)))):
+                    found.append(self._run(t, here, power, 0) if way < 0 else self._run(here, t, 0, power))
+        return found + self._hidden(finite, good, keep)
+
+    def _hidden(self, finite: np.ndarray, good: np.ndarray, keep: Callable[[Points], np.ndarray]) -> list[_Run]:
+        """Runs so short that no sample shows them, between a verge and the place where pressing stops."""
+        t, found = self.span.t, []
+        for k in np.flatnonzero(finite[1:] != finite[:-1]):
+            touching, beyond = (k, k + 1) if finite[k] else (k + 1, k)
+            if good[touching]:
+                continue
+            verge, here = _edge(lambda u: np.isfinite(self._roll(u)), t[touching], t[beyond], _EXACT), t[touching]
+            beside = verge + _NEARLY * (here - verge)
+            if self._presses(np.array([beside]))[0] and bool(keep(self._place(beside))):
+                end = _edge(self._presses, beside, here, _COARSE)
+                found.append(self._run(end, verge, 0, 2) if finite[k] else self._run(verge, end, 2, 0))
         return found
+
+    def _run(self, first: float, last: float, opens: int, closes: int) -> _Run:
+        """The run between two parameters; which way it goes shows in its middle."""
+        t = first + (last - first) * _MIDDLE
+        p, tangent = self.span.curve.point(t), self.span.curve.tangent(t)
+        roll = self.motion.meet(p, tangent, self.branch)
+        z, side = self.motion.place(p, roll), self.motion.turn(roll) * tangent
+        return _Run(first, last, opens, closes, bool(np.real((z[1] - z[0]) * np.conj(side[0] + side[1])) > 0))
 
     def _end(self, k: int, way: int) -> tuple[float, int]:
         """Where a run ends that goes on from sample k in direction `way` (0: no further), and its verge."""
@@ -259,6 +287,10 @@ class _Contacts(NamedTuple):
 
     def _roll(self, t: Reals) -> Reals:
         return self.motion.meet(self.span.curve.point(t), self.span.curve.tangent(t), self.branch)
+
+    def _place(self, t: float) -> Points:
+        at = np.asarray(t)
+        return self.motion.place(self.span.curve.point(at), self._roll(at))
 
     def _presses(self, t: Reals) -> np.ndarray:
         p, tangent, curvature = _bent(self.span.curve, t, self.span.curve.span)

@@ -328,7 +328,7 @@ class Sweep:
     def _checked(self, path: list[Stretch], turn: int) -> list[Stretch]:
         heights = [self.hand * np.abs(s.curve.point(np.linspace(s.first, s.last, 17))) for s in path]
         top = abs(max(float(h.max()) for h in heights))
-        if turn != self.hand:
+        if (turn - self.hand) % self.order:
             raise DesignError(
                 f"the sweep cuts the teeth off at radius {top:.5g} mm: take fewer teeth on the given outline, a lower "
                 "tip on it, or more teeth on the mate"

@@ -163,7 +163,7 @@ def external_mate(
             f"the given outline reaches {outline.r_max:.5g} mm from its axis, beyond the axis of a mate of {teeth} "
             f"teeth at {motion.centre_distance:.5g} mm: take more teeth or a lower tip"
         )
-    tip = _tip(tip_radius, motion.centre_distance - _core(outline), 1)
+    tip = _tip(tip_radius, motion.centre_distance - outline.r_max, motion.centre_distance - _core(outline))
     facing = tuple(Piece(Turned(p.curve, -1), p.role) for p in outline.pieces)
     sweep = Sweep(facing, _wrap(outline), motion, math.pi, teeth, 1, tip)
     return _mate(sweep, radius, motion.centre_distance, tip_radius, tooth_thinning)
@@ -187,7 +187,7 @@ def ring_mate(
         raise DesignError(f"a ring of {teeth} teeth has no room for {outline.order}; take {outline.order + 1} or more")
     radius = pitch_radius * teeth / outline.order
     motion = CircleOnCircle(radius, -pitch_radius)
-    tip = _tip(tip_radius, motion.centre_distance + _core(outline), -1)
+    tip = _tip(tip_radius, motion.centre_distance + outline.r_max, motion.centre_distance + _core(outline))
     sweep = Sweep(outline.pieces, _wrap(outline), motion, math.pi, teeth, -1, tip)
     return _mate(sweep, radius, motion.centre_distance, tip_radius, tooth_thinning)
 
@@ -212,7 +212,7 @@ def inner_mate(
         )
     radius = pitch_radius * teeth / outline.order
     motion = CircleOnCircle(radius, -pitch_radius)
-    tip = _tip(tip_radius, outline.r_max + motion.centre_distance, 1)
+    tip = _tip(tip_radius, outline.r_min + motion.centre_distance, outline.r_max + motion.centre_distance)
     sweep = Sweep(outline.pieces, _wrap(outline), motion, math.pi, teeth, 1, tip)
     return _mate(sweep, radius, -motion.centre_distance, tip_radius, tooth_thinning)
 
@@ -241,10 +241,9 @@ def rack_mate(
         )
     radius = pitch * teeth / (2 * math.pi)
     _check_teeth(teeth)
-    depth = max(float(np.max(p.curve.point(p.curve.sample(_PLACES)).real)) for p in rack)
-    sweep = Sweep(
-        tuple(rack), 1, LineOnCircle(radius), 2 * math.pi * radius, teeth, 1, _tip(tip_radius, radius + depth, 1)
-    )
+    heights = np.concatenate([p.curve.point(p.curve.sample(_PLACES)).real for p in rack])
+    tip = _tip(tip_radius, radius + float(heights.min()), radius + float(heights.max()))
+    sweep = Sweep(tuple(rack), 1, LineOnCircle(radius), 2 * math.pi * radius, teeth, 1, tip)
     return _mate(sweep, radius, math.inf, tip_radius, tooth_thinning)
 
 
@@ -315,15 +314,15 @@ def _core(outline: Outline) -> float:
     return outline.r_min if outline.is_chain else 0.0
 
 
-def _tip(tip_radius: float | None, limit: float, hand: int) -> float:
-    """Tip radius of the sweep; without one, just out of reach."""
+def _tip(tip_radius: float | None, root: float, limit: float) -> float:
+    """Tip radius of the sweep, between where the given tips reach and where its root would touch; or just beyond."""
     if tip_radius is None:
-        return limit * (1 + hand * _BEYOND)
-    if not (tip_radius > 0 and hand * (limit - tip_radius) > _ROUND * limit):
-        side = "above 0 and below" if hand > 0 else "above"
+        return limit + math.copysign(_BEYOND * limit, limit - root)
+    low, high = sorted((root, limit))
+    if not low + _ROUND * high < tip_radius < high - _ROUND * high:
         raise DesignError(
-            f"the mate's tip radius is {tip_radius:.6g} mm; it must be {side} {limit:.6g} mm, where it would touch the "
-            "root of the given outline: or leave it out"
+            f"the mate's tip radius is {tip_radius:.6g} mm; it must lie above {low:.6g} and below {high:.6g} mm, "
+            "between where tip and root of the given outline would touch it: or leave it out"
         )
     return tip_radius
 
@@ -353,9 +352,10 @@ def _joined(pieces: list[Piece], sweep: Sweep) -> tuple[Piece, ...]:
     Where a normal grazes the pitch circle the roll is known to half the digits only, and so is how far along its edge a
     strand ends.
     """
-    pieces = [p for p in pieces if abs(p.curve.end - p.curve.start) > _APART * abs(p.curve.start)]
-    starts = np.array([p.curve.start for p in pieces])
-    ends = np.array([p.curve.end for p in pieces])
+    corners = np.array([p.curve.point(np.array(p.curve.span)) for p in pieces])
+    long = np.abs(corners[:, 1] - corners[:, 0]) > _APART * np.abs(corners[:, 0])
+    pieces = [p for p, kept in zip(pieces, long, strict=True) if kept]
+    starts, ends = corners[long].T
     gaps = np.roll(starts, -1) - ends
     gaps[-1] = starts[0] * np.exp(1j * sweep.hand * sweep.pitch) - ends[-1]
     parted = np.abs(gaps) > _APART * np.max(np.abs(ends))
@@ -364,18 +364,17 @@ def _joined(pieces: list[Piece], sweep: Sweep) -> tuple[Piece, ...]:
     )
 
 
-def _role(s: Stretch, sweep: Sweep) -> Role:
-    if s.strand is None:
-        return "tip"
-    if s.strand.is_corner:
-        return "fillet"
-    if sweep.pieces[s.strand.piece].role == "tip":
-        return "root" if isinstance(s.placed(sweep.pitch), Arc) else "fillet"
-    return _ROLES[sweep.pieces[s.strand.piece].role]
-
-
 def _piece(s: Stretch, sweep: Sweep) -> Piece:
-    return Piece(s.placed(sweep.pitch), _role(s, sweep))
+    """A stretch where it stands, and what it is on the mate."""
+    curve = s.placed(sweep.pitch)
+    if s.strand is None:
+        return Piece(curve, "tip")
+    given = sweep.pieces[s.strand.piece].role
+    if s.strand.is_corner:
+        return Piece(curve, "fillet")
+    if given == "tip":
+        return Piece(curve, "root" if isinstance(curve, Arc) else "fillet")
+    return Piece(curve, _ROLES[given])
 
 
 def _turned(curve: Curve, factor: complex) -> Curve:

@@ -87,8 +87,10 @@ REFUSALS = {
     "a wheel for a ring": (lambda: inner_mate(WHEEL.outline, 30, 20), "is a wheel"),
     "ring too small": (lambda: ring_mate(WHEEL.outline, 30, 60), "take 61 or more"),
     "pinion too large": (lambda: inner_mate(InternalGear(60, 1).outline, 30, 60), "take 59 or less"),
-    "tip into the root": (lambda: external_mate(WHEEL.outline, 30, 8, 6), "above 0 and below 5.25 mm"),
-    "ring tip into the root": (lambda: ring_mate(WHEEL.outline, 30, 90, 43), "above 43.75 mm"),
+    "tip into the root": (lambda: external_mate(WHEEL.outline, 30, 8, 6), "above 3 and below 5.25 mm"),
+    "tip below the root": (lambda: external_mate(WHEEL.outline, 30, 8, 2.9), "above 3 and below 5.25 mm"),
+    "rack's wheel too small": (lambda: rack_mate(rack(20, 1, 1.25), 20, 8), "above 9 and below 11.25 mm"),
+    "ring tip into the root": (lambda: ring_mate(WHEEL.outline, 30, 90, 43), "above 43.75 and below 46 mm"),
     "pointed": (lambda: external_mate(InvoluteGear(20, 1, profile_shift=-0.5).outline, 10, 8, 5.7), "pointed at 5.53"),
     "pointed ring": (lambda: ring_mate(straight(12, 7, 4, 0.9, 0.9), 6, 30, 13.2), "pointed at 13.[0-9]* mm"),
     "teeth cut off": (

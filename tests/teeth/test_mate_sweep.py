@@ -24,6 +24,7 @@ CASES = {
     "lantern": (pins(10, 5, 0.6), lambda g: external_mate(g, 5, 40, 20.5)),
     "lantern inside its pitch circle": (pins(10, 4.8, 0.6), lambda g: external_mate(g, 5, 40, 20.2)),
     "lantern outside its pitch circle": (pins(10, 5.3, 0.6), lambda g: external_mate(g, 5, 40, 20.1)),
+    "lantern whose pins loop": (pins(21, 10.55, 0.402), lambda g: external_mate(g, 10.5, 8, 4.4)),
     "straight teeth": (straight(24, 13, 11, 0.5, 0.5), lambda g: external_mate(g, 12, 30, 15.7)),
     "ogival": (ogival(60, 30, 1.4, 28), lambda g: external_mate(g, 30, 10, 6)),
     "ring around a pinion": (InvoluteGear(20, 1).outline, lambda g: ring_mate(g, 10, 42, 20.2)),
